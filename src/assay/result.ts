@@ -1,4 +1,7 @@
 import type { Pair, Side, Species } from '../electrolyte/species.ts';
+import type { Finding } from '../finding.ts';
+
+export type { Finding, Severity } from '../finding.ts';
 
 // What an assay says. These are the shapes of `tankhue/assay/1`: fields may be added, never changed.
 
@@ -9,16 +12,6 @@ export interface Quantity {
 }
 
 export type AssayState = 'sound' | 'caution' | 'withheld';
-export type Severity = 'note' | 'caution' | 'withhold';
-
-/** An answer with a doubt. `code` is stable; `message` says what was seen against what limit, `hint` what to do. */
-export interface Finding {
-  code: string;
-  severity: Severity;
-  message: string;
-  hint: string;
-}
-
 /**
  * One independent cause of error and its signed effect of one standard deviation on each concentration (mol/L of the tank).
  * The covariance of the concentrations is the sum of effect·effectᵀ over all sources. Two results whose sources carry the same

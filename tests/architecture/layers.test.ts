@@ -4,10 +4,11 @@ import { describe, expect, test } from 'vitest';
 
 // Lowest first; a file may import from its own row and from rows before it.
 const ROWS = [
-  ['errors', 'units'],
+  ['errors', 'units', 'finding'],
   ['numerics'],
   ['spectrum'],
   ['electrolyte'],
+  ['estimation'],
   ['calibration'],
   ['assay'],
   ['tanks', 'bench'],

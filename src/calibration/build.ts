@@ -1,0 +1,282 @@
+import { TankhueError } from '../errors.ts';
+import type { Finding } from '../finding.ts';
+import type { Association } from '../electrolyte/association.ts';
+import { PAIRS, speciesOfPair, type Pair } from '../electrolyte/species.ts';
+import { assumedPathUncertainty, DEFAULT_CEILING } from '../estimation/cuvette.ts';
+import { DEFAULT_MODE_PRIORS, type ModePriors } from '../estimation/namedModes.ts';
+import { resample } from '../spectrum/resample.ts';
+import type { Calibration, Grid, Matrix, PairCalibration, StandardRecord } from './calibration.ts';
+import { candidateModels, choose, fitChoicesFor } from './choose.ts';
+import { fitPair, type PairStandard, type PairStandards } from './fitPair.ts';
+import { commonGrid, wavelengthsOf } from './grid.ts';
+import { pairRecord } from './pairRecord.ts';
+import { dealToPairs, totalVanadiumOf, type Standard } from './standard.ts';
+import { standardRecords } from './standardRecords.ts';
+
+export interface CalibrationRequest {
+  readonly name: string;
+  readonly source: string;
+  readonly standards: readonly Standard[];
+  /** names left out by decision; recorded */
+  readonly without?: readonly string[];
+  /** complexes to compare besides the usual ones */
+  readonly associations?: readonly Association[];
+  readonly grid?: Partial<Grid>;
+  /** absorbance above which points are not used */
+  readonly ceiling?: number;
+  readonly priors?: ModePriors;
+  readonly matrix?: Matrix;
+  readonly provenance: Calibration['provenance'];
+}
+
+/** Relative freedom of a label of unstated uncertainty, where validation lets labels move (common practice, no source). */
+const ASSUMED_LABEL_FREEDOM = 0.005;
+/** Part of the standards that may lack a wavelength before the wavelength goes; beyond it the standards go. */
+const TOLERATED_GAPS = 0.1;
+
+/**
+ * Builds a calibration for every pair that the standards can determine.
+ * @param progress called with a pair and the share of its work done
+ * @throws TankhueError when no pair can be determined, with the reason for each
+ */
+export function calibrate(
+  request: CalibrationRequest,
+  progress: (pair: Pair, done: number) => void = () => {},
+): Calibration {
+  requireDistinctNames(request.standards);
+  const without = new Set(request.without ?? []);
+  const kept = request.standards.filter((standard) => !without.has(standard.name));
+  const unknown = [...without].filter((name) => !request.standards.some((standard) => standard.name === name));
+  if (unknown.length > 0)
+    throw new TankhueError(
+      'unknown-standard',
+      `expected the name of a standard in the sheet; received ${unknown.join(', ')}`,
+      '--without',
+      'copy the name from the sheet',
+    );
+  if (kept.length === 0)
+    throw new TankhueError(
+      'no-standards',
+      'expected standards; received none',
+      'standards sheet',
+      'fill in a row for each cuvette',
+    );
+  const grid = commonGrid(
+    kept.map((standard) => standard.spectrum),
+    request.grid ?? {},
+  );
+  const priors = request.priors ?? DEFAULT_MODE_PRIORS;
+  const findings: Finding[] = [...without].map((name) => ({
+    code: 'left-out-by-decision',
+    severity: 'note',
+    message: `standard ${name} was left out by decision`,
+    hint: 'write down why; the file keeps the name',
+  }));
+  const pairs: PairCalibration[] = [];
+  const records: StandardRecord[] = [];
+  const refusals: TankhueError[] = [];
+  const dealt = dealToPairs(kept);
+  for (const pair of PAIRS) {
+    const members = dealt.get(pair)!;
+    if (!members.some((standard) => standard.role === 'calibration')) continue;
+    try {
+      const built = buildPair(pair, members, grid, request, priors, (done) => progress(pair, done));
+      pairs.push(built.pair);
+      records.push(...built.records);
+      findings.push(...built.findings);
+    } catch (error) {
+      if (!(error instanceof TankhueError)) throw error;
+      refusals.push(error);
+      findings.push({
+        code: error.code,
+        severity: 'caution',
+        message: `${pair} could not be calibrated: ${error.message}`,
+        hint: error.hint,
+      });
+    }
+  }
+  if (pairs.length === 0) throw refusals[0]!;
+  return {
+    name: request.name,
+    source: request.source,
+    grid,
+    matrix: request.matrix ?? { temperature: commonTemperature(kept), acid: null },
+    pairs,
+    standards: records,
+    findings,
+    provenance: request.provenance,
+  };
+}
+
+function requireDistinctNames(standards: readonly Standard[]): void {
+  const seen = new Set<string>();
+  for (const { name } of standards) {
+    if (seen.has(name))
+      throw new TankhueError(
+        'name-repeats',
+        `expected every standard to have a name of its own; received "${name}" twice`,
+        'standards sheet, column standard',
+        'number the fillings: A-1, A-2',
+      );
+    seen.add(name);
+  }
+}
+
+function commonTemperature(standards: readonly Standard[]): number | null {
+  const known = standards.map((standard) => standard.temperature).filter((value) => value !== null);
+  return known.length === 0 ? null : known.reduce((sum, value) => sum + value, 0) / known.length;
+}
+
+interface BuiltPair {
+  readonly pair: PairCalibration;
+  readonly records: readonly StandardRecord[];
+  readonly findings: readonly Finding[];
+}
+
+function buildPair(
+  pair: Pair,
+  members: readonly Standard[],
+  grid: Grid,
+  request: CalibrationRequest,
+  priors: ModePriors,
+  progress: (done: number) => void,
+): BuiltPair {
+  const findings: Finding[] = [];
+  const { standards, used } = onGrid(pair, members, grid, request.ceiling ?? DEFAULT_CEILING, findings);
+  const fitted = standards.rows.filter((_, i) => used[i]!.role === 'calibration');
+  const training: PairStandards = { ...standards, rows: fitted };
+  requireCompositions(training);
+  const grouped = withGroups(training, findings);
+  const models = modelsThatCanBeTold(grouped, candidateModels(pair, request.associations ?? []), findings);
+  const chosen = choose(grouped, models, true, priors, progress);
+  const fit = fitPair(grouped, fitChoicesFor(grouped, chosen.choice));
+  if (!fit.converged)
+    findings.push({
+      code: 'not-converged',
+      severity: 'caution',
+      message: `${pair}: the fit of paths${chosen.choice.labelsMove ? ' and labels' : ''} still moved after its last round`,
+      hint: 'look at the standards with the largest movement; one of them may be from another cell',
+    });
+  const record = pairRecord(grouped, fit, chosen, priors);
+  const { records, doubts } = standardRecords(standards, used, fit, record, priors);
+  return { pair: record, records, findings: [...findings, ...doubts] };
+}
+
+/** Absorbances on the wavelengths that (nearly) all standards have; standards that lack some of those are set aside by name. */
+function onGrid(
+  pair: Pair,
+  members: readonly Standard[],
+  grid: Grid,
+  ceiling: number,
+  findings: Finding[],
+): { standards: PairStandards; used: Standard[] } {
+  const axis = wavelengthsOf(grid);
+  const curves = members.map((standard) =>
+    resample(standard.spectrum, axis, grid.step).absorbance.map((value) => (value > ceiling ? NaN : value)),
+  );
+  const keep = [...axis.keys()].filter(
+    (i) => curves.filter((curve) => !Number.isFinite(curve[i])).length <= TOLERATED_GAPS * curves.length,
+  );
+  const complete = members.map((_, s) => keep.every((i) => Number.isFinite(curves[s]![i])));
+  members.forEach((standard, s) => {
+    if (complete[s]) return;
+    findings.push({
+      code: 'over-ceiling',
+      severity: 'caution',
+      message: `standard ${standard.name} was set aside: it lacks values or reads above ${ceiling} where the others can be read`,
+      hint: 'measure it in a thinner cell, or raise --ceiling if the photometer was verified to go higher',
+    });
+  });
+  const used = members.filter((_, s) => complete[s]);
+  const [lower, higher] = speciesOfPair(pair);
+  const rows = used.map((standard): PairStandard => {
+    const concentration = totalVanadiumOf(standard) / standard.dilution;
+    return {
+      name: standard.name,
+      group: standard.preparation ?? `${totalVanadiumOf(standard).toPrecision(3)} mol/L`,
+      absorbance: Float64Array.from(keep, (i) => curves[members.indexOf(standard)]![i]!),
+      pathLength: standard.pathLength,
+      pathUncertainty:
+        standard.pathUncertainty === null
+          ? assumedPathUncertainty(standard.pathLength)
+          : standard.pathUncertainty / standard.pathLength,
+      lower: standard.concentration[lower] / standard.dilution,
+      higher: standard.concentration[higher] / standard.dilution,
+      labelUncertainty: (standard.concentrationUncertainty ?? 0) / standard.dilution,
+      labelFreedom:
+        standard.concentrationUncertainty === null
+          ? ASSUMED_LABEL_FREEDOM * concentration
+          : standard.concentrationUncertainty / standard.dilution,
+    };
+  });
+  return { standards: { pair, wavelength: Float64Array.from(keep, (i) => axis[i]!), rows }, used };
+}
+
+/** @throws TankhueError `too-few-compositions` */
+function requireCompositions(standards: PairStandards): void {
+  const shares = distinctShares(standards);
+  const [lower, higher] = speciesOfPair(standards.pair);
+  if (shares.length < 2)
+    throw new TankhueError(
+      'too-few-compositions',
+      `two compositions between ${lower} and ${higher} are needed to tell them apart; ${shares.length} found`,
+      'standards sheet',
+      `add a standard with another share of ${higher}`,
+    );
+}
+
+const distinctShares = (standards: PairStandards): number[] => [
+  ...new Set(standards.rows.map((row) => Math.round((100 * row.higher) / (row.lower + row.higher)))),
+];
+const distinctTotals = (standards: PairStandards): number[] => [
+  ...new Set(standards.rows.map((row) => Number((row.lower + row.higher).toPrecision(2)))),
+];
+
+/** Models whose parameters these standards can determine at all; what they cannot tell is said in words. */
+function modelsThatCanBeTold(
+  standards: PairStandards,
+  models: ReturnType<typeof candidateModels>,
+  findings: Finding[],
+): ReturnType<typeof candidateModels> {
+  const shares = distinctShares(standards).length;
+  const totals = distinctTotals(standards).length;
+  const { pair } = standards;
+  const [lower, higher] = speciesOfPair(pair);
+  return models.filter((plans) => {
+    const mixed = plans.some((plan) => Object.keys(plan.association.reactants).length > 1);
+    const self = plans.some((plan) => Object.keys(plan.association.reactants).length === 1);
+    const name = plans.map((plan) => plan.association.name).join(' and ');
+    if (mixed && shares < 3) {
+      findings.push({
+        code: 'cannot-tell-association',
+        severity: 'caution',
+        message: `${name}: three compositions between ${lower} and ${higher} are needed to fit a complex; ${shares} found`,
+        hint: 'add a standard near half and half',
+      });
+      return false;
+    }
+    if (self && totals < 2) {
+      findings.push({
+        code: 'cannot-tell-association',
+        severity: 'note',
+        message: `${name}: with one total concentration self-association cannot be told from the ion's own spectrum`,
+        hint: 'add standards at a second total concentration, for example diluted with the same acid to two thirds',
+      });
+      return false;
+    }
+    return standards.rows.length >= 3 + plans.length;
+  });
+}
+
+/** With one group there is nothing to leave out but single standards: that validation flatters, and says so. */
+function withGroups(standards: PairStandards, findings: Finding[]): PairStandards {
+  const groups = new Set(standards.rows.map((row) => row.group));
+  if (groups.size > 1) return standards;
+  findings.push({
+    code: 'validation-optimistic',
+    severity: 'caution',
+    message: `${standards.pair}: all ${standards.rows.length} standards are of one preparation, so single standards were left out; errors they share do not show`,
+    hint: 'make a second preparation from other stock, or at another total concentration',
+  });
+  return { ...standards, rows: standards.rows.map((row) => ({ ...row, group: row.name })) };
+}
