@@ -1,0 +1,115 @@
+// What        The performance check of a photometer: every test that was scanned, judged, and what later assays need of it.
+// Equation    see the file of each test.
+// Why so      one record, made from whatever was scanned: what was not scanned stays null and later assays keep their usual priors.
+// Valid for   scans of one instrument at one time.
+// Units       those of `InstrumentRecord`.
+// Source      as in the files of the tests.
+import type { InstrumentRecord } from '../../assay/instrumentRecord.ts';
+import type { Finding } from '../../assay/result.ts';
+import { TankhueError } from '../../errors.ts';
+import type { Spectrum } from '../../spectrum/spectrum.ts';
+import { baselineStability, DEFAULT_BASELINE_LIMITS, type BaselineLimits } from './baselineStability.ts';
+import { cellPaths } from './cellPath.ts';
+import { worstConformity } from './conformity.ts';
+import { opticalResolution } from './opticalResolution.ts';
+import { photometricScale } from './photometricScale.ts';
+import { scansOf, type InstrumentScan } from './scans.ts';
+import { strayLight } from './strayLight.ts';
+import { wavelengthScale } from './wavelengthScale.ts';
+
+export interface VerificationOptions {
+  readonly instrument: string;
+  /** ISO date, or empty */
+  readonly checkedAt: string;
+  readonly baselineLimits: BaselineLimits;
+}
+
+export const DEFAULT_VERIFICATION: VerificationOptions = {
+  instrument: '',
+  checkedAt: '',
+  baselineLimits: DEFAULT_BASELINE_LIMITS,
+};
+
+/** Standard uncertainty of an axis nobody checked, nm, and noise of a point nobody measured, absorbance [common practice]. */
+const UNCHECKED_AXIS = 0.3;
+const UNMEASURED_NOISE = 0.001;
+
+/** @throws TankhueError `no-scans`, and what single tests refuse */
+export function verifyInstrument(
+  scans: readonly InstrumentScan[],
+  options: VerificationOptions = DEFAULT_VERIFICATION,
+): InstrumentRecord {
+  if (scans.length === 0)
+    throw new TankhueError(
+      'no-scans',
+      'expected at least one scan; received none',
+      'scans',
+      'scan holmium oxide solution, repeated blanks or another of the tests',
+    );
+  const wavelength = wavelengthScale(scansOf(scans, 'holmium'));
+  const baseline = baselineStability(scansOf(scans, 'blank'), scansOf(scans, 'repeat'), options.baselineLimits);
+  const scale = photometricScale(scansOf(scans, 'dichromate-perchloric', 'dichromate-sulfuric'));
+  const dark = strayLight(scansOf(scans, 'cut-off'));
+  const resolution = opticalResolution(
+    scansOf(scans, 'toluene-hexane'),
+    baseline.property.noise?.constant ?? UNMEASURED_NOISE,
+  );
+  const cells = cellPaths(
+    scansOf(scans, 'empty-cell'),
+    scansOf(scans, 'filled-cell'),
+    wavelength.property ? Math.hypot(wavelength.property.value, wavelength.property.uncertainty) : UNCHECKED_AXIS,
+  );
+  const outcomes = [wavelength, scale, dark, baseline, resolution, cells];
+  const tests = outcomes.flatMap((outcome) => outcome.tests);
+  return {
+    schema: 'tankhue/instrument/1',
+    instrument: options.instrument,
+    checkedAt: options.checkedAt,
+    state: worstConformity(tests.map(({ conformity }) => conformity)),
+    wavelengthShift: wavelength.property,
+    offsetPrior: baseline.property.offsetPrior,
+    slopePrior: baseline.property.slopePrior,
+    strayLight: dark.property,
+    photometricScale: scale.property,
+    noise: baseline.property.noise,
+    cells: cells.property,
+    tests,
+    consequences: [],
+    findings: [...outcomes.flatMap((outcome) => outcome.findings), ...untested(scans)],
+    assumed: [
+      'limits are kept or broken only past a guard band of 1.96 standard uncertainties (JCGM 106); between is undecided',
+      ...(wavelength.property ? [] : [`the wavelength axis is good to ${UNCHECKED_AXIS} nm (k = 1), because holmium was not scanned`]),
+    ],
+    inputs: inputsOf(scans),
+  };
+}
+
+/** What an assay leans on and nobody looked at. */
+function untested(scans: readonly InstrumentScan[]): Finding[] {
+  const wanted: readonly [readonly InstrumentScan['test'][], string][] = [
+    [['holmium'], 'wavelength axis (holmium oxide solution)'],
+    [['dichromate-perchloric', 'dichromate-sulfuric'], 'absorbance scale (potassium dichromate)'],
+    [['cut-off'], 'stray light (cut-off solution or filter)'],
+    [['blank'], 'noise and drift (repeated blanks)'],
+  ];
+  const missing = wanted.filter(([tests]) => !scans.some((scan) => tests.includes(scan.test))).map(([, name]) => name);
+  if (missing.length === 0) return [];
+  return [
+    {
+      code: 'not-tested',
+      severity: 'note',
+      message: `expected every part of the photometer to be checked; received no scan for: ${missing.join(', ')}`,
+      hint: 'later assays keep the usual priors for these',
+    },
+  ];
+}
+
+function inputsOf(scans: readonly InstrumentScan[]): InstrumentRecord['inputs'] {
+  const spectra = scans.flatMap((scan): Spectrum[] => [
+    scan.spectrum,
+    ...('blank' in scan && scan.blank ? [scan.blank] : []),
+    ...('reference' in scan ? [scan.reference] : []),
+  ]);
+  const seen = new Map(spectra.map(({ origin }) => [`${origin.file}\n${origin.column}`, origin]));
+  return [...seen.values()].map(({ file, column, sha256 }) => ({ file, column, sha256 }));
+}
