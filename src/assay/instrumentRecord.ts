@@ -1,4 +1,4 @@
-import type { Finding } from './result.ts';
+import type { Finding } from '../finding.ts';
 
 // What a performance check of the photometer leaves for later assays: `tankhue/instrument/1`. Fields may be added, never changed.
 

@@ -1,4 +1,4 @@
-import type { Finding } from './result.ts';
+import type { Finding } from '../finding.ts';
 
 // What a sheet of replicates says of the scatter in real life: `tankhue/precision/1`. Fields may be added, never changed.
 

@@ -7,9 +7,10 @@
 // Units       those of the log; deviations in standard deviations.
 // Source      ISO 7870-2; steadiness by J. von Neumann, Ann. Math. Stat. 1941, 12, 367; single strays by
 //             F. E. Grubbs, Technometrics 1969, 11, 1. The handling of lots is ours.
-import type { Finding } from '../../assay/result.ts';
+import type { Finding } from '../../finding.ts';
 import { TankhueError } from '../../errors.ts';
 import { chiSquareQuantile, normalCdf, studentQuantile } from '../../numerics/distributions.ts';
+import { grubbsLimit } from '../grubbs.ts';
 import type { CheckLog, CheckPoint } from './checkLog.ts';
 
 /** Number of points that make a baseline when the sheet marks none [common practice]. */
@@ -119,11 +120,11 @@ function doubtsAbout(
     );
 
   const largest = Math.max(...residuals.map(Math.abs)) / standardDeviation;
-  if (largest > grubbsLimit(count))
+  if (largest > grubbsLimit(count, 0.05))
     say(
       'baseline-outlier',
       'caution',
-      `expected no baseline point more than ${grubbsLimit(count).toFixed(2)} standard deviations off (Grubbs, 95 %); received ${largest.toFixed(2)}: one point widens the limits of all others`,
+      `expected no baseline point more than ${grubbsLimit(count, 0.05).toFixed(2)} standard deviations off (Grubbs, 95 %); received ${largest.toFixed(2)}: one point widens the limits of all others`,
       'find out what happened that day; if there is a cause write no for it in the column baseline',
     );
 
@@ -135,13 +136,6 @@ function doubtsAbout(
       'compare the calibration and the certificate of the check standard',
     );
   return findings;
-}
-
-/** Two-sided critical value of Grubbs' test at 95 %. */
-export function grubbsLimit(count: number): number {
-  if (count < 3) return Infinity;
-  const t = studentQuantile(1 - 0.05 / (2 * count), count - 2);
-  return ((count - 1) / Math.sqrt(count)) * Math.sqrt((t * t) / (count - 2 + t * t));
 }
 
 const meanOf = (values: readonly number[]): number => values.reduce((sum, value) => sum + value, 0) / values.length;

@@ -5,11 +5,16 @@
 // Valid for   one check standard, its lots included; lots that cannot be judged are said, not guessed.
 // Units       deviations in standard deviations of the baseline; shifts in the log's unit.
 // Source      as in the files named.
-import type { Finding } from '../../assay/result.ts';
+import type { Finding } from '../../finding.ts';
 import { baselineOf, DEFAULT_BASELINE_COUNT, type Baseline } from './baseline.ts';
 import { movedModes, type MovedMode } from './cause.ts';
 import type { CheckLog } from './checkLog.ts';
-import { cumulativeSums, DEFAULT_CUMULATIVE_SUM, type CumulativeSumDesign, type CumulativeSums } from './cumulativeSum.ts';
+import {
+  cumulativeSums,
+  DEFAULT_CUMULATIVE_SUM,
+  type CumulativeSumDesign,
+  type CumulativeSums,
+} from './cumulativeSum.ts';
 import {
   DEFAULT_MOVING_AVERAGE,
   movingAverage,
@@ -260,7 +265,9 @@ function doubtsAboutLots(log: CheckLog, baseline: Baseline): Finding[] {
 function assumptions(log: CheckLog, baseline: Baseline): string[] {
   const marked = log.points.some((point) => point.inBaseline === true);
   return [
-    ...(marked ? [] : [`the first ${baseline.points.length} measured points are the baseline, because no line is marked`]),
+    ...(marked
+      ? []
+      : [`the first ${baseline.points.length} measured points are the baseline, because no line is marked`]),
     'points are independent and normal about a known centre; run lengths are stated for that',
     'missing points are passed over: nothing is filled in, and the sums stand still',
   ];

@@ -18,6 +18,8 @@ import type { RunRule } from './runRules.ts';
 
 const NODES = 80;
 
+const ones = (count: number): number[] => Array.from({ length: count }, () => 1);
+
 const normalDensity = (x: number): number => Math.exp(-0.5 * x * x) / Math.sqrt(2 * Math.PI);
 
 /** @param shift of the mean, in standard deviations */
@@ -29,7 +31,7 @@ export function runLengthOfMovingAverage(design: MovingAverageDesign, shift: num
   const matrix = Array.from(nodes, (from, i) =>
     Array.from(nodes, (to, j) => (i === j ? 1 : 0) - weights[j]! * density(from, to)),
   );
-  const lengths = solveSquare(matrix, new Array<number>(NODES).fill(1));
+  const lengths = solveSquare(matrix, ones(NODES));
   return 1 + nodes.reduce((sum, to, j) => sum + weights[j]! * density(0, to) * lengths[j]!, 0);
 }
 
@@ -44,12 +46,9 @@ function oneSidedRunLength({ slack, limit }: CumulativeSumDesign, shift: number)
   const starts = [0, ...nodes];
   const matrix = starts.map((from, i) => [
     (i === 0 ? 1 : 0) - normalCdf(slack - from - shift),
-    ...Array.from(
-      nodes,
-      (to, j) => (i === j + 1 ? 1 : 0) - weights[j]! * normalDensity(to + slack - from - shift),
-    ),
+    ...Array.from(nodes, (to, j) => (i === j + 1 ? 1 : 0) - weights[j]! * normalDensity(to + slack - from - shift)),
   ]);
-  return solveSquare(matrix, new Array<number>(starts.length).fill(1))[0]!;
+  return solveSquare(matrix, ones(starts.length))[0]!;
 }
 
 /** @param shift of the mean, in standard deviations */
@@ -86,12 +85,12 @@ export function runLengthOfRunRules(rules: readonly RunRule[], shift: number): n
     }
   }
   const matrix = states.map((_, from) => {
-    const row = new Array<number>(states.length).fill(0);
+    const row = Array.from({ length: states.length }, () => 0);
     row[from] = 1;
     for (const { to, probability } of moves[from]!) row[to]! -= probability;
     return row;
   });
-  return solveSquare(matrix, new Array<number>(states.length).fill(1))[0]!;
+  return solveSquare(matrix, ones(states.length))[0]!;
 }
 
 const SIGNALLED = -1;

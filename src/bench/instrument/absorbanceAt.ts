@@ -1,5 +1,5 @@
 import type { MeasuredProperty } from '../../assay/instrumentRecord.ts';
-import { fitLinear } from '../../numerics/leastSquares.ts';
+import { fitLinear } from '../../numerics/linearFit.ts';
 import type { Spectrum } from '../../spectrum/spectrum.ts';
 
 /**

@@ -7,9 +7,9 @@
 // Units       absorbance; drift A/h; slope A per 100 nm.
 // Source      ours; limits: common practice, no source.
 import type { InstrumentRecord, InstrumentTest } from '../../assay/instrumentRecord.ts';
-import type { Finding } from '../../assay/result.ts';
+import type { Finding } from '../../finding.ts';
 import { chiSquareQuantile } from '../../numerics/distributions.ts';
-import { fitLinear } from '../../numerics/leastSquares.ts';
+import { fitLinear } from '../../numerics/linearFit.ts';
 import type { Spectrum } from '../../spectrum/spectrum.ts';
 import type { BlankScan, RepeatScan } from './scans.ts';
 import { judged, type TestOutcome } from './testOutcome.ts';
@@ -145,11 +145,18 @@ function weightedMean(pairs: readonly (readonly [number, number])[]): number {
 }
 
 /** Mean and slope of one blank. */
-function baselineOfScan({ wavelength, absorbance }: Spectrum): { offset: number; offsetUncertainty: number; slope: number } {
+function baselineOfScan({ wavelength, absorbance }: Spectrum): {
+  offset: number;
+  offsetUncertainty: number;
+  slope: number;
+} {
   const kept = [...wavelength.keys()].filter((i) => Number.isFinite(absorbance[i]));
   const middle = (wavelength[0]! + wavelength[wavelength.length - 1]!) / 2;
   const x = Float64Array.from(kept, (i) => (wavelength[i]! - middle) / 100);
-  const fit = fitLinear([x.map(() => 1), x], Float64Array.from(kept, (i) => absorbance[i]!));
+  const fit = fitLinear(
+    [x.map(() => 1), x],
+    Float64Array.from(kept, (i) => absorbance[i]!),
+  );
   return { offset: fit.coefficients[0]!, offsetUncertainty: fit.standardErrors[0]!, slope: fit.coefficients[1]! };
 }
 
@@ -176,11 +183,16 @@ function driftTest(
   shapes: readonly { offset: number }[],
   limit: number,
 ): InstrumentTest[] {
-  const timed = blanks.flatMap(({ minutes }, i) => (Number.isNaN(minutes) ? [] : [{ minutes, offset: shapes[i]!.offset }]));
+  const timed = blanks.flatMap(({ minutes }, i) =>
+    Number.isNaN(minutes) ? [] : [{ minutes, offset: shapes[i]!.offset }],
+  );
   if (new Set(timed.map(({ minutes }) => minutes)).size < 3) return [];
   const middle = timed.reduce((sum, { minutes }) => sum + minutes, 0) / timed.length;
   const hours = Float64Array.from(timed, ({ minutes }) => (minutes - middle) / 60);
-  const fit = fitLinear([hours.map(() => 1), hours], Float64Array.from(timed, ({ offset }) => offset));
+  const fit = fitLinear(
+    [hours.map(() => 1), hours],
+    Float64Array.from(timed, ({ offset }) => offset),
+  );
   return [
     judged(
       {
@@ -225,7 +237,14 @@ function flatnessTest(blanks: readonly BlankScan[], limit: number): InstrumentTe
     uncertainty = (near.length > 2 ? standardDeviation(near) : Math.abs(departure)) / Math.sqrt(near.length);
   });
   return judged(
-    { test: 'blank', property: 'flatness, largest departure over 10 nm', unit: 'A', value: largest, uncertainty, limitSource: LIMIT_SOURCE },
+    {
+      test: 'blank',
+      property: 'flatness, largest departure over 10 nm',
+      unit: 'A',
+      value: largest,
+      uncertainty,
+      limitSource: LIMIT_SOURCE,
+    },
     [-limit, limit],
   );
 }

@@ -6,8 +6,8 @@
 // Units       cm.
 // Source      ours.
 import type { CheckedCell } from '../../assay/instrumentRecord.ts';
-import type { Finding } from '../../assay/result.ts';
-import { fitLinear } from '../../numerics/leastSquares.ts';
+import type { Finding } from '../../finding.ts';
+import { fitLinear } from '../../numerics/linearFit.ts';
 import type { Spectrum } from '../../spectrum/spectrum.ts';
 import { FRINGE_CHANCE_LIMIT, pathFromFringes } from './interferenceFringes.ts';
 import type { EmptyCellScan, FilledCellScan } from './scans.ts';
@@ -53,7 +53,10 @@ function cellFromFringes(scan: EmptyCellScan, wavelengthUncertainty: number): Ce
         },
       ],
     };
-  return { cell: { name: cell, pathLength: found.pathLength, uncertainty: found.uncertainty, method: 'fringes' }, findings: [] };
+  return {
+    cell: { name: cell, pathLength: found.pathLength, uncertainty: found.uncertainty, method: 'fringes' },
+    findings: [],
+  };
 }
 
 function cellFromReference({ cell, spectrum, reference, referencePath }: FilledCellScan): CellOutcome {
@@ -82,7 +85,10 @@ function cellFromReference({ cell, spectrum, reference, referencePath }: FilledC
   const ratio = fit.coefficients[1]!;
   const relative = Math.hypot(fit.standardErrors[1]! / ratio, referencePath.uncertainty / referencePath.value);
   const pathLength = ratio * referencePath.value;
-  return { cell: { name: cell, pathLength, uncertainty: Math.abs(pathLength) * relative, method: 'absorber' }, findings: [] };
+  return {
+    cell: { name: cell, pathLength, uncertainty: Math.abs(pathLength) * relative, method: 'absorber' },
+    findings: [],
+  };
 }
 
 /** On a straight line between neighbouring points; NaN outside. */

@@ -8,8 +8,8 @@
 // Units       wavelength nm, path cm, σ in cm⁻¹.
 // Source      any text on infrared or thin cells; fit and detection limit ours.
 import { TankhueError } from '../../errors.ts';
-import { fitLinear, type LinearFit } from '../../numerics/leastSquares.ts';
-import { fCdf } from '../../numerics/distributions.ts';
+import { fitLinear, type LinearFit } from '../../numerics/linearFit.ts';
+import { fSurvival } from '../../numerics/distributions.ts';
 import type { Spectrum } from '../../spectrum/spectrum.ts';
 
 export interface FringeOptions {
@@ -83,7 +83,7 @@ export function pathFromFringes(spectrum: Spectrum, options: FringeOptions): Fri
   const freedom = fit.degreesOfFreedom;
   const ratio = (plain.residualSumOfSquares - fit.residualSumOfSquares) / 3 / (fit.residualSumOfSquares / freedom);
   const trials = Math.max(1, (to - from) / resolution);
-  const chance = Math.min(1, trials * (1 - fCdf(ratio, 3, freedom)));
+  const chance = Math.min(1, trials * fSurvival(ratio, 3, freedom));
   if (!(chance < FRINGE_CHANCE_LIMIT)) return null;
 
   const pathLength = frequency / (2 * options.refractiveIndex);

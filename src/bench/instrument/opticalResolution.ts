@@ -4,7 +4,7 @@
 // Valid for   0.02 % v/v toluene in hexane, photometers that reach 264 nm.
 // Units       ratio without unit.
 // Source      European Pharmacopoeia 2.2.25.
-import type { Finding } from '../../assay/result.ts';
+import type { Finding } from '../../finding.ts';
 import type { Spectrum } from '../../spectrum/spectrum.ts';
 import { TOLUENE_RATIO } from './photometricStandards.ts';
 import type { TolueneScan } from './scans.ts';

@@ -7,7 +7,7 @@
 // Units       absorbance; c mg/L; ℓ cm. Scale: measured over true, minus 1.
 // Source      see `photometricStandards.ts`; permitted error ±0.010 or 1 %, European Pharmacopoeia 2.2.25, from memory.
 import type { InstrumentTest, MeasuredProperty } from '../../assay/instrumentRecord.ts';
-import type { Finding } from '../../assay/result.ts';
+import type { Finding } from '../../finding.ts';
 import { absorbanceAt } from './absorbanceAt.ts';
 import {
   DICHROMATE_430_NM,
@@ -44,7 +44,8 @@ export function photometricScale(scans: readonly DichromateScan[]): TestOutcome<
 
 function netAbsorbance(scan: DichromateScan, nm: number): MeasuredProperty | null {
   const gross = absorbanceAt(scan.spectrum, nm);
-  if (!gross || !scan.blank) return gross && { value: gross.value, uncertainty: Math.hypot(gross.uncertainty, UNKNOWN_BLANK) };
+  if (!gross || !scan.blank)
+    return gross && { value: gross.value, uncertainty: Math.hypot(gross.uncertainty, UNKNOWN_BLANK) };
   const blank = absorbanceAt(scan.blank, nm);
   return blank && { value: gross.value - blank.value, uncertainty: Math.hypot(gross.uncertainty, blank.uncertainty) };
 }
@@ -62,7 +63,11 @@ function perchloricReadings(scan: DichromateScan): Reading[] {
     const perCentimetre = net.value / scan.pathLength.value;
     const shared = Math.hypot(relative(scan.concentration), relative(scan.pathLength));
     // The table prints three decimals.
-    const own = Math.hypot(net.uncertainty / net.value, perchloricUncertainty(nominal) / 1.96, 0.0005 / Math.sqrt(3) / nominal);
+    const own = Math.hypot(
+      net.uncertainty / net.value,
+      perchloricUncertainty(nominal) / 1.96,
+      0.0005 / Math.sqrt(3) / nominal,
+    );
     const permitted = Math.max(0.01, 0.01 * nominal);
     const test = judged(
       {
@@ -105,7 +110,9 @@ function sulfuricReadings(scan: DichromateScan): Reading[] {
       [low, high],
     );
     // The limits are a permitted range, not the truth: half their width is taken as the 95 % uncertainty of the middle.
-    return [{ test, relativeError: specific / middle - 1, own: Math.hypot(own, (high - low) / 2 / middle / 1.96), shared }];
+    return [
+      { test, relativeError: specific / middle - 1, own: Math.hypot(own, (high - low) / 2 / middle / 1.96), shared },
+    ];
   });
 }
 
@@ -122,7 +129,8 @@ function meanScale(readings: readonly Reading[]): MeasuredProperty {
 function doubtsAboutScan(scan: DichromateScan): Finding[] {
   const findings: Finding[] = [];
   const c = scan.concentration.value;
-  const ranges = scan.test === 'dichromate-perchloric' ? [[20, 100] as const] : [SULFURIC_ACID_RANGE, DICHROMATE_430_RANGE];
+  const ranges =
+    scan.test === 'dichromate-perchloric' ? [[20, 100] as const] : [SULFURIC_ACID_RANGE, DICHROMATE_430_RANGE];
   if (!ranges.some((range) => within(c, range)))
     findings.push({
       code: 'standard-out-of-range',
@@ -151,7 +159,10 @@ const within = (value: number, [low, high]: readonly [number, number]): boolean 
 
 /** Straight lines between the points of a rising table; the caller has checked the range. */
 function interpolate(x: readonly number[], y: readonly number[], at: number): number {
-  const above = Math.max(1, x.findIndex((value) => value >= at));
+  const above = Math.max(
+    1,
+    x.findIndex((value) => value >= at),
+  );
   const share = (at - x[above - 1]!) / (x[above]! - x[above - 1]!);
   return y[above - 1]! + share * (y[above]! - y[above - 1]!);
 }

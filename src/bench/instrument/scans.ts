@@ -78,14 +78,7 @@ export interface TolueneScan extends Scan {
 }
 
 export type InstrumentScan =
-  | HolmiumScan
-  | DichromateScan
-  | CutOffScan
-  | EmptyCellScan
-  | FilledCellScan
-  | BlankScan
-  | RepeatScan
-  | TolueneScan;
+  HolmiumScan | DichromateScan | CutOffScan | EmptyCellScan | FilledCellScan | BlankScan | RepeatScan | TolueneScan;
 
 /** The scans of one test. */
 export function scansOf<Name extends InstrumentScan['test']>(

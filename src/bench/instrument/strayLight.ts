@@ -6,7 +6,7 @@
 // Units       s: share of the beam.
 // Source      any text on instrumental analysis; ASTM E387; limits see `photometricStandards.ts`.
 import type { InstrumentRecord } from '../../assay/instrumentRecord.ts';
-import type { Finding } from '../../assay/result.ts';
+import type { Finding } from '../../finding.ts';
 import type { CutOffScan } from './scans.ts';
 import { judged, type TestOutcome } from './testOutcome.ts';
 

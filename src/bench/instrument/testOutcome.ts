@@ -1,5 +1,5 @@
 import type { InstrumentTest } from '../../assay/instrumentRecord.ts';
-import type { Finding } from '../../assay/result.ts';
+import type { Finding } from '../../finding.ts';
 import { judgeConformity } from './conformity.ts';
 
 /** What one test contributes to the record. */

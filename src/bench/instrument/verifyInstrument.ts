@@ -5,7 +5,7 @@
 // Units       those of `InstrumentRecord`.
 // Source      as in the files of the tests.
 import type { InstrumentRecord } from '../../assay/instrumentRecord.ts';
-import type { Finding } from '../../assay/result.ts';
+import type { Finding } from '../../finding.ts';
 import { TankhueError } from '../../errors.ts';
 import type { Spectrum } from '../../spectrum/spectrum.ts';
 import { baselineStability, DEFAULT_BASELINE_LIMITS, type BaselineLimits } from './baselineStability.ts';
@@ -78,7 +78,9 @@ export function verifyInstrument(
     findings: [...outcomes.flatMap((outcome) => outcome.findings), ...untested(scans)],
     assumed: [
       'limits are kept or broken only past a guard band of 1.96 standard uncertainties (JCGM 106); between is undecided',
-      ...(wavelength.property ? [] : [`the wavelength axis is good to ${UNCHECKED_AXIS} nm (k = 1), because holmium was not scanned`]),
+      ...(wavelength.property
+        ? []
+        : [`the wavelength axis is good to ${UNCHECKED_AXIS} nm (k = 1), because holmium was not scanned`]),
     ],
     inputs: inputsOf(scans),
   };

@@ -8,8 +8,8 @@
 // Units       nm; instrument minus truth.
 // Source      bands: see `photometricStandards.ts`; permitted error: European Pharmacopoeia 2.2.25.
 import type { InstrumentTest, MeasuredProperty } from '../../assay/instrumentRecord.ts';
-import type { Finding } from '../../assay/result.ts';
-import { fitLinear } from '../../numerics/leastSquares.ts';
+import type { Finding } from '../../finding.ts';
+import { fitLinear } from '../../numerics/linearFit.ts';
 import { studentQuantile } from '../../numerics/distributions.ts';
 import { bandPosition } from './bandPositions.ts';
 import {
@@ -28,19 +28,18 @@ const REACH = 4;
 export function wavelengthScale(scans: readonly HolmiumScan[]): TestOutcome<MeasuredProperty | null> {
   const seen = scans.flatMap(({ spectrum }) => bandsSeen(spectrum));
   const findings: Finding[] = scans.flatMap(({ spectrum }) => doubtsAboutScan(spectrum));
-  const tests = seen.map(
-    ({ band, difference, uncertainty }): InstrumentTest =>
-      judged(
-        {
-          test: 'holmium',
-          property: `${band} nm band`,
-          unit: 'nm',
-          value: difference,
-          uncertainty: Math.hypot(uncertainty, HOLMIUM_LIST_UNCERTAINTY),
-          limitSource: 'European Pharmacopoeia 2.2.25; band positions from memory',
-        },
-        [-permittedWavelengthError(band), permittedWavelengthError(band)],
-      ),
+  const tests = seen.map(({ band, difference, uncertainty }): InstrumentTest =>
+    judged(
+      {
+        test: 'holmium',
+        property: `${band} nm band`,
+        unit: 'nm',
+        value: difference,
+        uncertainty: Math.hypot(uncertainty, HOLMIUM_LIST_UNCERTAINTY),
+        limitSource: 'European Pharmacopoeia 2.2.25; band positions from memory',
+      },
+      [-permittedWavelengthError(band), permittedWavelengthError(band)],
+    ),
   );
   const inAssayRange = seen.filter(({ band }) => band >= ASSAY_FROM);
   const deciding = inAssayRange.length > 0 ? inAssayRange : seen;

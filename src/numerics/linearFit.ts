@@ -1,0 +1,76 @@
+// What        Ordinary least squares on a few columns, with the covariance of the coefficients.
+// Equation    y = Σ_j β_j x_j, X = QR, β = R⁻¹Qᵀy; covariance = s² R⁻¹R⁻ᵀ, s² = RSS/(n − p).
+// Why so      QR keeps the digits that normal equations lose. Weights: scale row i of every column and of y by 1/σ_i.
+// Valid for   more rows than columns; dependent columns are refused, never answered.
+// Units       those of y over those of the column.
+// Source      any text on linear models; NIST StRD checks it.
+import { TankhueError } from '../errors.ts';
+import { dot, thinQrOfRows } from './gramSchmidt.ts';
+
+export interface LinearFit {
+  readonly coefficients: Float64Array;
+  /** row-major p × p */
+  readonly covariance: Float64Array;
+  readonly standardErrors: Float64Array;
+  readonly residualSumOfSquares: number;
+  readonly degreesOfFreedom: number;
+}
+
+/** @throws TankhueError `columns-dependent`, `points-missing` */
+export function fitLinear(columns: readonly Float64Array[], y: Float64Array): LinearFit {
+  const count = columns.length;
+  const degreesOfFreedom = y.length - count;
+  if (degreesOfFreedom < 1)
+    throw new TankhueError(
+      'points-missing',
+      `expected more than ${count} points for ${count} coefficients; received ${y.length}`,
+      'fit',
+      'measure more points',
+    );
+  const { q, r, dependent } = thinQrOfRows(columns);
+  if (dependent.length > 0)
+    throw new TankhueError(
+      'columns-dependent',
+      `expected independent columns; received ${dependent.length} that the others make up`,
+      'fit',
+      'leave out a column, or vary it',
+    );
+  const inverse = invertUpper(r, count);
+  const projections = q.map((row) => dot(row, y));
+  const coefficients = new Float64Array(count);
+  for (let i = 0; i < count; i++)
+    for (let j = i; j < count; j++) coefficients[i]! += inverse[i * count + j]! * projections[j]!;
+  let residualSumOfSquares = 0;
+  for (let l = 0; l < y.length; l++) {
+    let residual = y[l]!;
+    for (let j = 0; j < count; j++) residual -= projections[j]! * q[j]![l]!;
+    residualSumOfSquares += residual * residual;
+  }
+  const variance = residualSumOfSquares / degreesOfFreedom;
+  const covariance = new Float64Array(count * count);
+  for (let i = 0; i < count; i++)
+    for (let j = 0; j < count; j++)
+      for (let k = Math.max(i, j); k < count; k++)
+        covariance[i * count + j]! += variance * inverse[i * count + k]! * inverse[j * count + k]!;
+  return {
+    coefficients,
+    covariance,
+    standardErrors: Float64Array.from({ length: count }, (_, i) => Math.sqrt(covariance[i * count + i]!)),
+    residualSumOfSquares,
+    degreesOfFreedom,
+  };
+}
+
+/** Inverse of a row-major upper triangle. */
+function invertUpper(r: Float64Array, count: number): Float64Array {
+  const inverse = new Float64Array(count * count);
+  for (let j = 0; j < count; j++) {
+    inverse[j * count + j] = 1 / r[j * count + j]!;
+    for (let i = j - 1; i >= 0; i--) {
+      let sum = 0;
+      for (let k = i + 1; k <= j; k++) sum += r[i * count + k]! * inverse[k * count + j]!;
+      inverse[i * count + j] = -sum / r[i * count + i]!;
+    }
+  }
+  return inverse;
+}
