@@ -44,6 +44,8 @@ export interface FitRecord {
   /** rms of measured − fitted, absorbance */
   residualRms: number;
   chiSquare: number;
+  /** misfit in standard deviations above that of left-out standards */
+  match: number;
   degreesOfFreedom: number;
   /** nm; null where not fitted */
   wavelengthShift: number | null;

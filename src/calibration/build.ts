@@ -3,14 +3,16 @@ import type { Finding } from '../finding.ts';
 import type { Association } from '../electrolyte/association.ts';
 import { PAIRS, speciesOfPair, type Pair } from '../electrolyte/species.ts';
 import { assumedPathUncertainty, DEFAULT_CEILING } from '../estimation/cuvette.ts';
+import { foreignSpectra, type ForeignSpectrum } from '../estimation/foreign.ts';
 import { DEFAULT_MODE_PRIORS, type ModePriors } from '../estimation/namedModes.ts';
 import { resample } from '../spectrum/resample.ts';
 import type { Calibration, Grid, Matrix, PairCalibration, StandardRecord } from './calibration.ts';
-import { candidateModels, choose, fitChoicesFor } from './choose.ts';
+import { candidateModels, choose, fitChoicesFor, type AssociationPlan, type Choice } from './choose.ts';
 import { fitPair, type PairStandard, type PairStandards } from './fitPair.ts';
 import { commonGrid, wavelengthsOf } from './grid.ts';
-import { pairRecord } from './pairRecord.ts';
+import { faultScalesOf, pairRecord } from './pairRecord.ts';
 import { dealToPairs, totalVanadiumOf, type Standard } from './standard.ts';
+import { leaveGroupsOut } from './validate.ts';
 import { standardRecords } from './standardRecords.ts';
 
 export interface CalibrationRequest {
@@ -33,6 +35,7 @@ export interface CalibrationRequest {
 const ASSUMED_LABEL_FREEDOM = 0.005;
 /** Part of the standards that may lack a wavelength before the wavelength goes; beyond it the standards go. */
 const TOLERATED_GAPS = 0.1;
+const SHARE_FOLDS = 4;
 
 /**
  * Builds a calibration for every pair that the standards can determine.
@@ -72,7 +75,7 @@ export function calibrate(
     message: `standard ${name} was left out by decision`,
     hint: 'write down why; the file keeps the name',
   }));
-  const pairs: PairCalibration[] = [];
+  const built: BuiltPair[] = [];
   const records: StandardRecord[] = [];
   const refusals: TankhueError[] = [];
   const dealt = dealToPairs(kept);
@@ -80,10 +83,10 @@ export function calibrate(
     const members = dealt.get(pair)!;
     if (!members.some((standard) => standard.role === 'calibration')) continue;
     try {
-      const built = buildPair(pair, members, grid, request, priors, (done) => progress(pair, done));
-      pairs.push(built.pair);
-      records.push(...built.records);
-      findings.push(...built.findings);
+      const one = buildPair(pair, members, grid, request, priors, (done) => progress(pair, done));
+      built.push(one);
+      records.push(...one.records);
+      findings.push(...one.findings);
     } catch (error) {
       if (!(error instanceof TankhueError)) throw error;
       refusals.push(error);
@@ -95,13 +98,14 @@ export function calibrate(
       });
     }
   }
-  if (pairs.length === 0) throw refusals[0]!;
+  if (built.length === 0) throw refusals[0]!;
+  const models = built.map((one) => one.pair.model);
   return {
     name: request.name,
     source: request.source,
     grid,
     matrix: request.matrix ?? { temperature: commonTemperature(kept), acid: null },
-    pairs,
+    pairs: built.map((one) => withForeignScores(one, foreignSpectra(one.pair.model, models), priors)),
     standards: records,
     findings,
     provenance: request.provenance,
@@ -127,7 +131,20 @@ function commonTemperature(standards: readonly Standard[]): number | null {
   return known.length === 0 ? null : known.reduce((sum, value) => sum + value, 0) / known.length;
 }
 
+/** A second look at the left-out standards, now that spectra of the states that must not be there are known. */
+function withForeignScores(
+  { pair, standards, choice }: BuiltPair,
+  foreign: readonly ForeignSpectrum[],
+  priors: ModePriors,
+): PairCalibration {
+  if (pair.leftOut.length === 0) return pair;
+  const leftOut = leaveGroupsOut(standards, (subset) => fitChoicesFor(subset, choice), priors, foreign);
+  return { ...pair, leftOut, faultScales: faultScalesOf(leftOut) };
+}
+
 interface BuiltPair {
+  readonly standards: PairStandards;
+  readonly choice: Choice;
   readonly pair: PairCalibration;
   readonly records: readonly StandardRecord[];
   readonly findings: readonly Finding[];
@@ -146,8 +163,8 @@ function buildPair(
   const fitted = standards.rows.filter((_, i) => used[i]!.role === 'calibration');
   const training: PairStandards = { ...standards, rows: fitted };
   requireCompositions(training);
-  const grouped = withGroups(training, findings);
-  const models = modelsThatCanBeTold(grouped, candidateModels(pair, request.associations ?? []), findings);
+  const models = modelsThatCanBeTold(training, candidateModels(pair, request.associations ?? []), findings);
+  const grouped = withGroups(training, models, findings);
   const chosen = choose(grouped, models, true, priors, progress);
   const fit = fitPair(grouped, fitChoicesFor(grouped, chosen.choice));
   if (!fit.converged)
@@ -159,7 +176,7 @@ function buildPair(
     });
   const record = pairRecord(grouped, fit, chosen, priors);
   const { records, doubts } = standardRecords(standards, used, fit, record, priors);
-  return { pair: record, records, findings: [...findings, ...doubts] };
+  return { standards: grouped, choice: chosen.choice, pair: record, records, findings: [...findings, ...doubts] };
 }
 
 /** Absorbances on the wavelengths that (nearly) all standards have; standards that lack some of those are set aside by name. */
@@ -225,12 +242,14 @@ function requireCompositions(standards: PairStandards): void {
     );
 }
 
-const distinctShares = (standards: PairStandards): number[] => [
-  ...new Set(standards.rows.map((row) => Math.round((100 * row.higher) / (row.lower + row.higher)))),
-];
+/** per cent of the higher species, whole */
+const shareOf = (row: PairStandard): number => Math.round((100 * row.higher) / (row.lower + row.higher));
+const distinctShares = (standards: PairStandards): number[] => [...new Set(standards.rows.map(shareOf))];
 const distinctTotals = (standards: PairStandards): number[] => [
   ...new Set(standards.rows.map((row) => Number((row.lower + row.higher).toPrecision(2)))),
 ];
+
+const isSelfAssociation = (plan: AssociationPlan): boolean => Object.keys(plan.association.reactants).length === 1;
 
 /** Models whose parameters these standards can determine at all; what they cannot tell is said in words. */
 function modelsThatCanBeTold(
@@ -243,8 +262,8 @@ function modelsThatCanBeTold(
   const { pair } = standards;
   const [lower, higher] = speciesOfPair(pair);
   return models.filter((plans) => {
-    const mixed = plans.some((plan) => Object.keys(plan.association.reactants).length > 1);
-    const self = plans.some((plan) => Object.keys(plan.association.reactants).length === 1);
+    const mixed = plans.some((plan) => !isSelfAssociation(plan));
+    const self = plans.some(isSelfAssociation);
     const name = plans.map((plan) => plan.association.name).join(' and ');
     if (mixed && shares < 3) {
       findings.push({
@@ -268,15 +287,35 @@ function modelsThatCanBeTold(
   });
 }
 
-/** With one group there is nothing to leave out but single standards: that validation flatters, and says so. */
-function withGroups(standards: PairStandards, findings: Finding[]): PairStandards {
+/**
+ * Groups for validation: preparations, else total concentrations, as `onGrid` wrote them. Where leaving a whole group out would leave one
+ * total concentration and the models carry self-association, or where there is one group, shares are left out instead; that validation
+ * does not see errors that a preparation shares, and says so.
+ */
+function withGroups(
+  standards: PairStandards,
+  models: ReturnType<typeof candidateModels>,
+  findings: Finding[],
+): PairStandards {
   const groups = new Set(standards.rows.map((row) => row.group));
-  if (groups.size > 1) return standards;
+  const needsTotals = models.some((plans) => plans.some(isSelfAssociation));
+  const everySubsetTells = [...groups].every(
+    (group) => distinctTotals({ ...standards, rows: standards.rows.filter((row) => row.group !== group) }).length > 1,
+  );
+  if (groups.size > 1 && (everySubsetTells || !needsTotals)) return standards;
   findings.push({
     code: 'validation-optimistic',
-    severity: 'caution',
-    message: `${standards.pair}: all ${standards.rows.length} standards are of one preparation, so single standards were left out; errors they share do not show`,
-    hint: 'make a second preparation from other stock, or at another total concentration',
+    severity: 'note',
+    message: `${standards.pair}: ${groups.size === 1 ? 'all standards are of one preparation' : 'leaving a preparation out would leave one total concentration'}, so shares were left out in turn; errors that a preparation shares do not show`,
+    hint: 'add a preparation at a further total concentration',
   });
-  return { ...standards, rows: standards.rows.map((row) => ({ ...row, group: row.name })) };
+  const shares = distinctShares(standards).sort((a, b) => a - b);
+  const folds = Math.min(SHARE_FOLDS, shares.length);
+  return {
+    ...standards,
+    rows: standards.rows.map((row) => ({
+      ...row,
+      group: `shares ${1 + (shares.indexOf(shareOf(row)) % folds)} of ${folds}`,
+    })),
+  };
 }

@@ -40,6 +40,8 @@ export interface PairCalibration {
   readonly betweenGroup: { readonly share: number; readonly total: number; readonly freedom: number };
   /** how well spectra of left-out standards matched: ln(χ²/ν), mean and standard deviation */
   readonly match: { readonly mean: number; readonly deviation: number; readonly count: number };
+  /** root mean square score of each named fault over left-out standards, at least 1: scores are judged in these units */
+  readonly faultScales: Readonly<Record<string, number>>;
   readonly domain: Domain;
   /** per standard left out with its group */
   readonly leftOut: readonly LeftOut[];

@@ -69,7 +69,8 @@ export interface StandardMove {
 
 const MOST_ROUNDS = 40;
 const UNWEIGHTED_ROUNDS = 2;
-const SETTLED = 1e-5;
+/** relative change of a path or label below which nothing that matters still moves */
+const SETTLED = 1e-4;
 
 /** Wavelength errors of single standards are left to the unnamed modes. */
 const NO_SHIFT = 0;

@@ -48,6 +48,7 @@ export function pairRecord(
       deviation: chosen.leftOut.length > 1 ? rootMeanSquare(logarithms.map((x) => x - mean)) : 1,
       count: chosen.leftOut.length,
     },
+    faultScales: faultScalesOf(chosen.leftOut),
     domain: domainOf(standards),
     leftOut: chosen.leftOut,
     validation: [
@@ -92,6 +93,14 @@ function constantsOf(standards: PairStandards, model: PairModel): ConstantRecord
         ? profileConstant(standards, model.associations, index).interval
         : [null, null],
   }));
+}
+
+/** Scores of left-out standards are what sound samples will show; below 1 the theory stands. */
+export function faultScalesOf(leftOut: readonly LeftOut[]): Record<string, number> {
+  const names = Object.keys(leftOut[0]?.faultScores ?? {});
+  return Object.fromEntries(
+    names.map((name) => [name, Math.max(1, rootMeanSquare(leftOut.map((x) => x.faultScores[name] ?? 0)))]),
+  );
 }
 
 function domainOf(standards: PairStandards): Domain {

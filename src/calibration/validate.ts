@@ -6,6 +6,8 @@
 // Valid for   two groups or more.
 // Units       share of the higher species 1; total vanadium relative.
 // Source      Mandel, Paule, Anal. Chem. 1970, 42, 1194, with the labels as known means.
+import { cuvetteFaults, fittedCurve, scoreFaults } from '../estimation/faults.ts';
+import { foreignFaults, type ForeignSpectrum } from '../estimation/foreign.ts';
 import type { ModePriors } from '../estimation/namedModes.ts';
 import { namedModes } from '../estimation/namedModes.ts';
 import { prepare } from '../estimation/prepare.ts';
@@ -27,6 +29,8 @@ export interface LeftOut {
   readonly totalError: number;
   readonly totalUncertainty: number;
   readonly reducedChiSquare: number;
+  /** scores of named faults, which are standard normal where the model is complete */
+  readonly faultScores: Readonly<Record<string, number>>;
 }
 
 export interface Excess {
@@ -39,6 +43,7 @@ export function leaveGroupsOut(
   standards: PairStandards,
   refit: (subset: PairStandards) => FitChoices,
   priors: ModePriors,
+  foreign: readonly ForeignSpectrum[] = [],
 ): LeftOut[] {
   const groups = [...new Set(standards.rows.map((row) => row.group))];
   return groups.flatMap((group) => {
@@ -48,19 +53,30 @@ export function leaveGroupsOut(
       fit,
       standards.rows.filter((row) => row.group === group),
       priors,
+      foreign,
     );
   });
 }
 
 /** Assays standards with a fit as if they were samples. */
-export function predict(fit: PairFit, rows: readonly PairStandard[], priors: ModePriors): LeftOut[] {
+export function predict(
+  fit: PairFit,
+  rows: readonly PairStandard[],
+  priors: ModePriors,
+  foreign: readonly ForeignSpectrum[] = [],
+): LeftOut[] {
   const prepared = prepare(fit.model, namedModes(fit.model.wavelength, priors));
   return rows.map((row) => {
-    const solution = solve(prepared, reduce(prepared, row.absorbance), {
+    const cuvette = {
       pathLength: row.pathLength,
       pathUncertainty: row.pathUncertainty,
       wavelengthUncertainty: priors.wavelengthShift,
-    });
+    };
+    const solution = solve(prepared, reduce(prepared, row.absorbance), cuvette);
+    const shapes = [
+      ...cuvetteFaults(prepared, fittedCurve(prepared, solution, row.pathLength).total),
+      ...foreignFaults(prepared, row.pathLength, foreign),
+    ];
     const found = shareAndTotal(
       solution.lower,
       solution.higher,
@@ -77,6 +93,9 @@ export function predict(fit: PairFit, rows: readonly PairStandard[], priors: Mod
       totalError: found.total / total - 1,
       totalUncertainty: Math.hypot(found.totalUncertainty / total, (row.labelUncertainty * Math.SQRT2) / total),
       reducedChiSquare: solution.chiSquare / (prepared.used.length - 2),
+      faultScores: Object.fromEntries(
+        scoreFaults(prepared, row.absorbance, solution, cuvette, shapes).map((fault) => [fault.name, fault.score]),
+      ),
     };
   });
 }
