@@ -9,8 +9,8 @@ import type { Finding, Severity } from '../finding.ts';
 import type { FaultScore } from '../estimation/faults.ts';
 import { scaledScore, type PairFitOfSample } from './pairFit.ts';
 
-/** Largest score of some ten directions that 1 % of sound spectra exceed. */
-const SCORE_LIMIT = 3.6;
+/** Largest score of some ten directions that about 1 % of sound spectra exceed. */
+const SCORE_LIMIT = 3.2;
 const MATCH_CAUTION = 3.3;
 const MATCH_WITHHOLD = 6;
 const INFORMATION_NEEDED = 0.6;

@@ -1,7 +1,9 @@
 // What        Which complexes, which freedom of the labels, how much noise and how many unnamed modes a pair gets.
-// Equation    least root mean square error of the share over left-out groups; a richer model must win by the stated margin.
-// Why so      Residuals always fall with more parameters; errors on standards that were not used do not. Choices are made in the order in
-//             which they matter: complexes, then labels, then noise and modes, so that the cost stays a sum and not a product.
+// Equation    complexes and labels by the root mean square error of the share over left-out groups, and by the left-out misfit; noise and
+//             modes by the density that the stated intervals give to the errors made, among choices nearly as accurate as the best.
+// Why so      Residuals always fall with more parameters; errors on standards that were not used do not. A complex can be invisible in the
+//             shares of undiluted standards and still be needed for a diluted sample: then the misfit of spectra decides. Choices are made in
+//             the order in which they matter, so that the cost stays a sum and not a product.
 // Valid for   two groups or more; with one group the declared defaults are taken and the record says so.
 // Units       share 1, noise absorbance.
 // Source      cross-validation by groups; margins ours.
@@ -11,7 +13,7 @@ import type { ModePriors } from '../estimation/namedModes.ts';
 import { withFittedConstant } from './associationConstant.ts';
 import type { Evidence } from './calibration.ts';
 import type { FitChoices, PairStandards } from './fitPair.ts';
-import { leaveGroupsOut, rootMeanSquare, type LeftOut } from './validate.ts';
+import { leaveGroupsOut, rootMeanSquare, surprise, type LeftOut } from './validate.ts';
 
 /** Complexes that a pair may carry when nobody declares others: each list is one model. Constant −1: to be fitted; 0: weak limit. */
 export interface AssociationPlan {
@@ -63,8 +65,11 @@ export interface Chosen {
 
 const DEFAULT_NOISE = 0.001;
 const DEFAULT_MODES = 8;
-const NOISES = [0.0003, 0.0005, 0.001, 0.002, 0.004];
+const NOISES = [0.0002, 0.0003, 0.0005, 0.001, 0.002, 0.004];
 const MODE_COUNTS = [2, 4, 8, 12];
+/** … or unless it lowers the left-out misfit by this part without making shares worse by the next. */
+const MARGIN_MISFIT = 0.2;
+const TOLERATED_LOSS = 0.1;
 /** A model with one complex less is kept unless the richer one is better by this part. */
 const MARGIN_COMPLEX = 0.05;
 /** Labels are trusted unless moving them is better by this part: a flexible label can swallow the model's error. */
@@ -84,7 +89,7 @@ export function choose(
   const evidence: Evidence[] = [];
   const steps = models.length + 1 + NOISES.length * MODE_COUNTS.length;
   const constants = new Map<string, Association[]>();
-  const attempt = (choice: Choice): { choice: Choice; leftOut: LeftOut[]; rmse: number } | null => {
+  const attempt = (choice: Choice): Attempt | null => {
     progress(evidence.length / steps);
     if (standards.rows.length <= 4 + choice.plans.length) return null;
     try {
@@ -105,21 +110,38 @@ export function choose(
     .sort((a, b) => a.choice.plans.length - b.choice.plans.length);
   if (compared.length === 0) return { choice: { ...base, plans: models[0]! }, leftOut: [], evidence };
   let best = compared[0]!;
-  for (const result of compared.slice(1)) {
-    const richer = result.choice.plans.length > best.choice.plans.length;
-    if (result.rmse < best.rmse * (richer ? 1 - MARGIN_COMPLEX : 1)) best = result;
-  }
+  for (const result of compared.slice(1)) if (isBetterModel(result, best)) best = result;
   if (labelsMayMove) {
     const moved = attempt({ ...best.choice, labelsMove: true });
     if (moved && moved.rmse < best.rmse * (1 - MARGIN_LABELS)) best = moved;
   }
-  for (const noise of NOISES)
-    for (const modeCount of MODE_COUNTS) {
-      const result = attempt({ ...best.choice, noise, modeCount });
-      if (result && result.rmse < best.rmse) best = result;
-    }
+  const tuned = NOISES.flatMap((noise) =>
+    MODE_COUNTS.map((modeCount) => attempt({ ...best.choice, noise, modeCount })),
+  );
+  best = leastSurprising([best, ...tuned.filter((result) => result !== null)]);
   evidence.sort((a, b) => a.rmse - b.rmse);
   return { choice: best.choice, leftOut: best.leftOut, evidence };
+}
+
+interface Attempt {
+  readonly choice: Choice;
+  readonly leftOut: readonly LeftOut[];
+  readonly rmse: number;
+}
+
+function isBetterModel(one: Attempt, best: Attempt): boolean {
+  const richer = one.choice.plans.length > best.choice.plans.length;
+  if (one.rmse < best.rmse * (richer ? 1 - MARGIN_COMPLEX : 1)) return true;
+  const misfit = (attempt: Attempt): number => rootMeanSquare(attempt.leftOut.map((x) => x.misfit));
+  return misfit(one) < misfit(best) * (1 - MARGIN_MISFIT) && one.rmse < best.rmse * (1 + TOLERATED_LOSS);
+}
+
+function leastSurprising(attempts: readonly Attempt[]): Attempt {
+  const least = Math.min(...attempts.map((attempt) => attempt.rmse));
+  return attempts
+    .filter((attempt) => attempt.rmse <= least * (1 + TOLERATED_LOSS))
+    .map((attempt) => ({ attempt, surprise: surprise(attempt.leftOut) }))
+    .sort((a, b) => a.surprise - b.surprise)[0]!.attempt;
 }
 
 /** Constants depend on the standards and the plans alone, so one fit of them serves every choice of noise and modes. */

@@ -29,6 +29,8 @@ export interface LeftOut {
   readonly totalError: number;
   readonly totalUncertainty: number;
   readonly reducedChiSquare: number;
+  /** root mean square of measured − fitted, absorbance */
+  readonly misfit: number;
   /** scores of named faults, which are standard normal where the model is complete */
   readonly faultScores: Readonly<Record<string, number>>;
 }
@@ -73,10 +75,8 @@ export function predict(
       wavelengthUncertainty: priors.wavelengthShift,
     };
     const solution = solve(prepared, reduce(prepared, row.absorbance), cuvette);
-    const shapes = [
-      ...cuvetteFaults(prepared, fittedCurve(prepared, solution, row.pathLength).total),
-      ...foreignFaults(prepared, row.pathLength, foreign),
-    ];
+    const fitted = fittedCurve(prepared, solution, row.pathLength).total;
+    const shapes = [...cuvetteFaults(prepared, fitted), ...foreignFaults(prepared, row.pathLength, foreign)];
     const found = shareAndTotal(
       solution.lower,
       solution.higher,
@@ -93,6 +93,7 @@ export function predict(
       totalError: found.total / total - 1,
       totalUncertainty: Math.hypot(found.totalUncertainty / total, (row.labelUncertainty * Math.SQRT2) / total),
       reducedChiSquare: solution.chiSquare / (prepared.used.length - 2),
+      misfit: rootMeanSquare(Array.from(prepared.used, (i, l) => row.absorbance[i]! - fitted[l]!)),
       faultScores: Object.fromEntries(
         scoreFaults(prepared, row.absorbance, solution, cuvette, shapes).map((fault) => [fault.name, fault.score]),
       ),
@@ -130,6 +131,19 @@ function excessDeviation(errors: readonly number[], uncertainties: readonly numb
     else high = middle;
   }
   return Math.sqrt(high);
+}
+
+/**
+ * Mean negative logarithm of the density that the intervals give to the errors made, ½(ln v + e²/v): small when errors are small and the
+ * stated uncertainties are neither too narrow nor too wide.
+ */
+export function surprise(leftOut: readonly LeftOut[]): number {
+  const { share } = excessOf(leftOut);
+  const sum = leftOut.reduce((total, x) => {
+    const variance = x.shareUncertainty ** 2 + share * share;
+    return total + (Math.log(variance) + x.shareError ** 2 / variance) / 2;
+  }, 0);
+  return sum / leftOut.length;
 }
 
 export const rootMeanSquare = (values: readonly number[]): number =>
