@@ -69,7 +69,7 @@ export function pairRecord(
 
 const average = (values: readonly number[]): number => values.reduce((sum, value) => sum + value, 0) / values.length;
 
-const roundedRow = (row: Float64Array): Float64Array => row.map((value) => Number(value.toPrecision(KEPT_DIGITS)));
+const roundedRow = (row: Float64Array): Float64Array => row.map((value) => Number(value.toPrecision(KEPT_DIGITS)) + 0);
 
 function rounded(model: PairModel): PairModel {
   return {

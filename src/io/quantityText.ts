@@ -1,0 +1,84 @@
+import { TankhueError, quoted } from '../errors.ts';
+import { centimetresFromMillimetres, kelvinFromCelsius } from '../units.ts';
+
+const WITH_UNIT = /^\s*([+-]?(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d+)?)\s*(\S*)\s*$/;
+
+function split(text: string, what: string, where: string, hint: string): { value: number; unit: string } {
+  const match = WITH_UNIT.exec(text);
+  if (!match) throw new TankhueError('not-a-number', `expected ${what}; received ${quoted(text)}`, where, hint);
+  return { value: Number(match[1]), unit: match[2]! };
+}
+
+/** `1mm`, `0.1 cm` → cm. @throws TankhueError `unit-missing`, `unit-unknown`, `out-of-range` */
+export function parseLength(text: string, where: string): number {
+  const hint = 'write 1mm or 1cm';
+  const { value, unit } = split(text, 'a path length with its unit', where, hint);
+  if (unit === '')
+    throw new TankhueError(
+      'unit-missing',
+      `expected a path length with its unit; received ${quoted(text)}`,
+      where,
+      hint,
+    );
+  if (unit !== 'mm' && unit !== 'cm')
+    throw new TankhueError('unit-unknown', `expected mm or cm; received ${quoted(unit)}`, where, hint);
+  if (!(value > 0))
+    throw new TankhueError('out-of-range', `expected a length above 0; received ${quoted(text)}`, where, hint);
+  return unit === 'mm' ? centimetresFromMillimetres(value) : value;
+}
+
+/** `25`, `25C`, `25 °C`, `298 K` → K; a bare number is °C, as on sheets. @throws TankhueError `unit-unknown`, `out-of-range` */
+export function parseTemperature(text: string, where: string): number {
+  const { value, unit } = split(text, 'a temperature', where, 'write 25C or 298K');
+  const kelvin = unit === 'K' ? value : kelvinFromCelsius(value);
+  if (!['', 'C', '°C', 'K'].includes(unit))
+    throw new TankhueError('unit-unknown', `expected °C or K; received ${quoted(unit)}`, where, 'write 25C or 298K');
+  if (!(kelvin > 250 && kelvin < 380))
+    throw new TankhueError(
+      'out-of-range',
+      `expected -20 to 100 °C; received ${quoted(text)}`,
+      where,
+      'write the temperature of the cuvette',
+    );
+  return kelvin;
+}
+
+/** A dilution, tank over cuvette, 1 or more. @throws TankhueError `out-of-range` */
+export function parseDilution(text: string, where: string): number {
+  const { value, unit } = split(text, 'a dilution factor', where, 'write 20 for 1 mL made up to 20 mL');
+  if (unit !== '' && unit !== '×' && unit !== 'x')
+    throw new TankhueError(
+      'unit-unknown',
+      `expected a plain factor; received ${quoted(text)}`,
+      where,
+      'write 20 for 1 mL made up to 20 mL',
+    );
+  if (!(value >= 1))
+    throw new TankhueError(
+      'out-of-range',
+      `expected a dilution of 1 or more; received ${quoted(text)}`,
+      where,
+      'write 20 for 1 mL made up to 20 mL, 1 for undiluted',
+    );
+  return value;
+}
+
+/** A plain number above a limit, with an optional unit word that must be the given one. @throws TankhueError */
+export function parsePositive(text: string, unitWord: string, where: string): number {
+  const { value, unit } = split(text, `a number of ${unitWord}`, where, `write for example 5 ${unitWord}`);
+  if (unit !== '' && unit !== unitWord)
+    throw new TankhueError(
+      'unit-unknown',
+      `expected ${unitWord}; received ${quoted(unit)}`,
+      where,
+      `write for example 5 ${unitWord}`,
+    );
+  if (!(value > 0))
+    throw new TankhueError(
+      'out-of-range',
+      `expected more than 0 ${unitWord}; received ${quoted(text)}`,
+      where,
+      `write for example 5 ${unitWord}`,
+    );
+  return value;
+}

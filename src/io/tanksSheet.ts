@@ -1,0 +1,93 @@
+import { readSheet } from './sheet.ts';
+import { readRows, SAMPLES_COLUMNS, samplesRow, type SamplesRow, type SheetOf } from './samplesSheet.ts';
+
+export const TANKS_COLUMNS = [
+  ...SAMPLES_COLUMNS,
+  'tank',
+  'volume_L',
+  'volume_u_L',
+  'cells_in_series',
+  'target_oxidation_state',
+  'open_circuit_V',
+  'formal_potential_V',
+  'fill_vanadium_mol',
+  'fill_volume_L',
+  'fill_vanadium_mol_L',
+  'composite_share_negative',
+  'composite_share_positive',
+  'charge_counter_Ah',
+  'free_volume_L',
+  'watch_oxidation',
+  'act_oxidation',
+] as const;
+
+/** A cuvette and the tank it came from. Null: nobody said. */
+export interface TanksRow extends SamplesRow {
+  readonly tank: string | null;
+  /** L; null for a composite */
+  readonly volume: number | null;
+  readonly volumeUncertainty: number | null;
+  readonly cellsInSeries: number | null;
+  readonly targetOxidationState: number | null;
+  /** V */
+  readonly openCircuit: number | null;
+  readonly formalPotential: number | null;
+  /** mol on this side when it was filled */
+  readonly fillVanadium: number | null;
+  /** volumes drawn from the two tanks for a composite, any one unit */
+  readonly compositeShares: { readonly negative: number; readonly positive: number } | null;
+  readonly chargeCounter: number | null;
+  readonly freeVolume: number | null;
+  /** the plant's own limits of |ν − ν*| */
+  readonly watchOxidation: number | null;
+  readonly actOxidation: number | null;
+}
+
+export function readTanksSheet(bytes: Uint8Array, fileName: string): SheetOf<TanksRow> {
+  const sheet = readSheet(bytes, fileName, TANKS_COLUMNS, ['sample', 'side', 'file', 'volume_L']);
+  return readRows(sheet, (read, row): TanksRow | null => {
+    const sample = samplesRow(read, row, fileName);
+    const positive = (column: string, unit: string): number | null =>
+      read.number(column, (value) => value > 0, `more than 0 ${unit}`);
+    const volume = positive('volume_L', 'L');
+    if (sample && sample.side !== 'composite' && volume === null && read.text('volume_L') === null)
+      read.refuse(
+        'volume-unknown',
+        'volume_L',
+        'expected the volume of the tank; received an empty cell',
+        'read the level and write the litres',
+      );
+    const fillVolume = positive('fill_volume_L', 'L');
+    const fillConcentration = positive('fill_vanadium_mol_L', 'mol/L');
+    const negativeShare = positive('composite_share_negative', 'mL');
+    const positiveShare = positive('composite_share_positive', 'mL');
+    const cells = read.number(
+      'cells_in_series',
+      (value) => value >= 1 && Number.isInteger(value),
+      'a whole number of cells, 1 or more',
+    );
+    const rest = {
+      tank: read.text('tank'),
+      volume,
+      volumeUncertainty: read.number('volume_u_L', (value) => value >= 0, '0 L or more'),
+      cellsInSeries: cells,
+      targetOxidationState: read.number(
+        'target_oxidation_state',
+        (value) => value > 2 && value < 5,
+        'a mean oxidation state between 2 and 5',
+      ),
+      openCircuit: positive('open_circuit_V', 'V'),
+      formalPotential: positive('formal_potential_V', 'V'),
+      fillVanadium:
+        positive('fill_vanadium_mol', 'mol') ??
+        (fillVolume !== null && fillConcentration !== null ? fillVolume * fillConcentration : null),
+      compositeShares:
+        negativeShare !== null && positiveShare !== null ? { negative: negativeShare, positive: positiveShare } : null,
+      chargeCounter: read.number('charge_counter_Ah'),
+      freeVolume: read.number('free_volume_L', (value) => value >= 0, '0 L or more'),
+      watchOxidation: positive('watch_oxidation', ''),
+      actOxidation: positive('act_oxidation', ''),
+    };
+    return sample ? { ...sample, ...rest } : null;
+  });
+}
