@@ -1,5 +1,32 @@
-/** The public API. The command line and the page use nothing else. */
+/** The public API: runs in Node and in a browser alike. The command line and the page use nothing else, but for files on disk. */
+export const VERSION = '0.1.0';
 export { TankhueError, TankhueErrors } from './errors.ts';
+export type { Finding, Severity } from './finding.ts';
 export { makeSpectrum, type Spectrum, type SpectrumOrigin } from './spectrum/spectrum.ts';
+export { resample } from './spectrum/resample.ts';
+export { subtractBlank } from './spectrum/blank.ts';
 export * from './electrolyte/species.ts';
+export { parseAssociation, type Association } from './electrolyte/association.ts';
+export { amountsOf, newAmounts } from './electrolyte/forwardModel.ts';
+export { calibrate, type CalibrationRequest } from './calibration/build.ts';
+export type * from './calibration/calibration.ts';
+export { parseCalibration, serialiseCalibration } from './calibration/file.ts';
+export type { Standard } from './calibration/standard.ts';
+export { assaySample, DEFAULT_ASSAY_OPTIONS, type CalibrationInUse } from './assay/assaySample.ts';
+export type { AssayOptions, BlankState, Sample } from './assay/sample.ts';
 export type * from './assay/result.ts';
+export {
+  findColumn,
+  parseSpectra,
+  understoodText,
+  type ReadOptions,
+  type SpectraRead,
+  type Understood,
+} from './io/spectra.ts';
+export { parseDilution, parseLength, parsePositive, parseTemperature } from './io/quantityText.ts';
+export { readSamplesSheet, type SamplesRow } from './io/samplesSheet.ts';
+export { readStandardsSheet, type StandardsRow } from './io/standardsSheet.ts';
+export { readTanksSheet, type TanksRow } from './io/tanksSheet.ts';
+export { assayText } from './report/assayText.ts';
+export { assayCsv } from './report/assayCsv.ts';
+export { calibrationText } from './report/calibrationText.ts';

@@ -14,7 +14,11 @@ export function serialiseCalibration(calibration: Calibration): string {
       design: { ...pair.design, condition: Number.isFinite(pair.design.condition) ? pair.design.condition : null },
     })),
   };
-  const plain = JSON.stringify(file, (_, value: unknown) => (value instanceof Float64Array ? Array.from(value) : value), 1);
+  const plain = JSON.stringify(
+    file,
+    (_, value: unknown) => (value instanceof Float64Array ? Array.from(value) : value),
+    1,
+  );
   // One line for each array of numbers: a person can page through the file and a comparison of two stays readable.
   return `${plain.replace(/\[\s+([-\d][-\d.eE+,\s]*?)\s+\]/g, (_, numbers: string) => `[${numbers.replace(/\s+/g, '')}]`)}\n`;
 }
@@ -28,15 +32,17 @@ export function parseCalibration(text: string, where = 'calibration'): Calibrati
   const raw = parseJson(text, where);
   const result = v.safeParse(calibrationSchema, raw);
   if (!result.success) {
-    const problems = result.issues.slice(0, MOST_PROBLEMS).map(
-      (issue) =>
-        new TankhueError(
-          'field-wrong',
-          `expected ${issue.expected ?? 'a valid value'}; received ${quoted(issue.received)}`,
-          `${where} $${pathOf(issue)}`,
-          'build the calibration again; do not mend numbers by hand',
-        ),
-    );
+    const problems = result.issues
+      .slice(0, MOST_PROBLEMS)
+      .map(
+        (issue) =>
+          new TankhueError(
+            'field-wrong',
+            `expected ${issue.expected ?? 'a valid value'}; received ${quoted(issue.received)}`,
+            `${where} $${pathOf(issue)}`,
+            'build the calibration again; do not mend numbers by hand',
+          ),
+      );
     throw new TankhueErrors(problems as [TankhueError, ...TankhueError[]]);
   }
   const problems = result.output.pairs.flatMap((pair, index) => disagreements(pair, `${where} $.pairs[${index}]`));
@@ -105,10 +111,19 @@ function disagreements(pair: CalibrationFile['pairs'][number], where: string): T
   expect(model.spectra.length === count, `${count} spectra`, model.spectra.length, '.spectra');
   model.spectra.forEach((row, k) => expect(row.length === points, `${points} values`, row.length, `.spectra[${k}]`));
   model.modes.forEach((row, k) => expect(row.length === points, `${points} values`, row.length, `.modes[${k}]`));
-  expect(model.designInverse.length === count * count, `${count * count} values`, model.designInverse.length, '.designInverse');
+  expect(
+    model.designInverse.length === count * count,
+    `${count * count} values`,
+    model.designInverse.length,
+    '.designInverse',
+  );
   model.associations.forEach((association, j) => {
     try {
-      stoichiometryIn(pair.pair, association as Calibration['pairs'][number]['model']['associations'][number], `${where}.model.associations[${j}]`);
+      stoichiometryIn(
+        pair.pair,
+        association as Calibration['pairs'][number]['model']['associations'][number],
+        `${where}.model.associations[${j}]`,
+      );
     } catch (error) {
       if (!(error instanceof TankhueError)) throw error;
       problems.push(error);
@@ -121,18 +136,16 @@ function revived(file: CalibrationFile): Calibration {
   const { schema: _, ...rest } = file;
   return {
     ...rest,
-    pairs: file.pairs.map(
-      (pair): PairCalibration => ({
-        ...(pair as unknown as PairCalibration),
-        model: {
-          ...(pair.model as unknown as PairCalibration['model']),
-          wavelength: Float64Array.from(pair.model.wavelength),
-          spectra: pair.model.spectra.map((row) => Float64Array.from(row)),
-          modes: pair.model.modes.map((row) => Float64Array.from(row)),
-          designInverse: Float64Array.from(pair.model.designInverse),
-        },
-        design: { ...pair.design, condition: pair.design.condition ?? Infinity },
-      }),
-    ),
+    pairs: file.pairs.map((pair): PairCalibration => ({
+      ...(pair as unknown as PairCalibration),
+      model: {
+        ...(pair.model as unknown as PairCalibration['model']),
+        wavelength: Float64Array.from(pair.model.wavelength),
+        spectra: pair.model.spectra.map((row) => Float64Array.from(row)),
+        modes: pair.model.modes.map((row) => Float64Array.from(row)),
+        designInverse: Float64Array.from(pair.model.designInverse),
+      },
+      design: { ...pair.design, condition: pair.design.condition ?? Infinity },
+    })),
   } as Calibration;
 }

@@ -60,7 +60,13 @@ const pairCalibration = v.strictObject({
   leftOut: v.array(leftOut),
   validation: v.array(v.strictObject({ group: text, count: nonNegative, share: errorFigures, total: errorFigures })),
   evidence: v.array(
-    v.strictObject({ model: text, labelsMoved: v.boolean(), noise: positive, modeCount: nonNegative, rmse: nonNegative }),
+    v.strictObject({
+      model: text,
+      labelsMoved: v.boolean(),
+      noise: positive,
+      modeCount: nonNegative,
+      rmse: nonNegative,
+    }),
   ),
   limits: v.array(
     v.strictObject({

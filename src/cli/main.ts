@@ -1,9 +1,12 @@
 #!/usr/bin/env node
 import { Command, CommanderError } from 'commander';
-import { TankhueError } from '../errors.ts';
+import { TankhueError, VERSION } from '../index.ts';
 
 /** One verb, one file, loaded when it is asked for: a single assay must not wait for code it does not use. */
-const VERBS: Readonly<Record<string, () => Promise<{ register: (program: Command) => void }>>> = {};
+const VERBS: Readonly<Record<string, () => Promise<{ register: (program: Command) => void }>>> = {
+  calibrate: () => import('./calibrate.ts'),
+  assay: () => import('./assay.ts'),
+};
 
 /** 0 sound or caution · 1 a defect of ours · 2 wrong usage · 3 input cannot be read · 4 a result was withheld. Commands set 4 themselves. */
 const EXIT = { defect: 1, usage: 2, unreadable: 3 } as const;
@@ -13,7 +16,7 @@ async function buildProgram(verb: string | undefined): Promise<Command> {
     .description(
       'Absorbance spectra of both tanks of a vanadium flow battery in; state of charge, imbalance, cause and remedy out.',
     )
-    .version('0.1.0')
+    .version(VERSION)
     .exitOverride()
     .showSuggestionAfterError();
   const wanted = verb !== undefined && verb in VERBS ? [VERBS[verb]!] : Object.values(VERBS);

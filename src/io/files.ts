@@ -57,11 +57,10 @@ function missingHint(path: string): string {
 }
 
 /**
- * Writes a whole file or nothing: to a temporary name beside it, then renamed.
- * @param inputs files of this command, which are never overwritten
- * @throws TankhueError `would-overwrite-input`, `folder-missing`
+ * Refuses an output that could not be written, before work is done for it.
+ * @throws TankhueError `would-overwrite-input`, `folder-missing`, `is-directory`
  */
-export function writeWhole(path: string, content: string | Uint8Array, inputs: readonly string[] = []): void {
+export function requireWritable(path: string, inputs: readonly string[]): void {
   const target = resolve(path);
   if (inputs.some((input) => resolve(input) === target))
     throw new TankhueError(
@@ -77,6 +76,17 @@ export function writeWhole(path: string, content: string | Uint8Array, inputs: r
       dirname(path),
       'make the folder first',
     );
+  if (existsSync(target) && statSync(target).isDirectory())
+    throw new TankhueError('is-directory', 'expected a file name; received a directory', path, 'name a file inside it');
+}
+
+/**
+ * Writes a whole file or nothing: to a temporary name beside it, then renamed.
+ * @param inputs files of this command, which are never overwritten
+ */
+export function writeWhole(path: string, content: string | Uint8Array, inputs: readonly string[] = []): void {
+  requireWritable(path, inputs);
+  const target = resolve(path);
   const temporary = `${target}.${randomBytes(4).toString('hex')}.part`;
   const file = openSync(temporary, 'wx');
   try {

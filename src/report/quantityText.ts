@@ -29,7 +29,7 @@ export function wrapped(text: string, width: number, indent: string): string {
   const lines: string[] = [];
   let line = '';
   for (const word of text.split(' ')) {
-    if (line && line.length + word.length + 1 > width - (lines.length > 0 ? indent.length : 0)) {
+    if (line && line.length + word.length + 1 > width) {
       lines.push(line);
       line = word;
     } else line = line ? `${line} ${word}` : word;
