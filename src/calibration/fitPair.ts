@@ -69,8 +69,8 @@ export interface StandardMove {
 
 const MOST_ROUNDS = 40;
 const UNWEIGHTED_ROUNDS = 2;
-/** relative change of a path or label below which nothing that matters still moves */
-const SETTLED = 1e-4;
+/** change of a path or label, in units of its uncertainty, below which nothing that matters still moves */
+const SETTLED = 0.03;
 
 /** Wavelength errors of single standards are left to the unnamed modes. */
 const NO_SHIFT = 0;
@@ -186,13 +186,13 @@ function largestChange(
 ): number {
   return Math.max(
     ...rows.map((row, s) => {
-      const total = row.lower + row.higher;
       const a = before[s]!;
       const b = after[s]!;
+      const label = Math.max(row.labelFreedom, 1e-4 * (row.lower + row.higher));
       return Math.max(
-        Math.abs(a.path - b.path),
-        Math.abs(a.lower - b.lower) / total,
-        Math.abs(a.higher - b.higher) / total,
+        Math.abs(a.path - b.path) / Math.max(row.pathUncertainty, 1e-4),
+        Math.abs(a.lower - b.lower) / label,
+        Math.abs(a.higher - b.higher) / label,
       );
     }),
   );
