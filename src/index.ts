@@ -23,7 +23,7 @@ export {
   type SpectraRead,
   type Understood,
 } from './io/spectra.ts';
-export { parseDilution, parseLength, parsePositive, parseTemperature } from './io/quantityText.ts';
+export { parseDilution, parseInUnits, parseLength, parsePositive, parseTemperature } from './io/quantityText.ts';
 export { readSamplesSheet, type SamplesRow } from './io/samplesSheet.ts';
 export { readStandardsSheet, type StandardsRow } from './io/standardsSheet.ts';
 export { readTanksSheet, type TanksRow } from './io/tanksSheet.ts';
@@ -33,3 +33,6 @@ export { calibrationText } from './report/calibrationText.ts';
 export { seededRandom, type Random } from './numerics/random.ts';
 export { simulateSpectrum, type SimulatedNoise, type SimulationRequest } from './estimation/simulate.ts';
 export { NO_FAULTS, type SimulatedFaults } from './estimation/simulateFaults.ts';
+export { compositionAt, parseComposition, sideHolding, type Composition } from './electrolyte/composition.ts';
+export { csvLine } from './report/csv.ts';
+export { spectraCsv, spectraJcamp } from './report/spectraText.ts';

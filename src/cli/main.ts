@@ -6,6 +6,7 @@ import { TankhueError, VERSION } from '../index.ts';
 const VERBS: Readonly<Record<string, () => Promise<{ register: (program: Command) => void }>>> = {
   calibrate: () => import('./calibrate.ts'),
   assay: () => import('./assay.ts'),
+  simulate: () => import('./simulate.ts'),
 };
 
 /** 0 sound or caution · 1 a defect of ours · 2 wrong usage · 3 input cannot be read · 4 a result was withheld. Commands set 4 themselves. */

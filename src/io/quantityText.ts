@@ -82,3 +82,30 @@ export function parsePositive(text: string, unitWord: string, where: string): nu
     );
   return value;
 }
+
+/**
+ * A number that must carry one of the given units, multiplied by that unit's size; `''` among them lets a bare number through.
+ * @param example what to write instead, e.g. `2mA`
+ * @throws TankhueError `not-a-number`, `unit-missing`, `unit-unknown`
+ */
+export function parseInUnits(
+  text: string,
+  what: string,
+  units: Readonly<Record<string, number>>,
+  example: string,
+  where: string,
+): number {
+  const hint = `write for example ${example}`;
+  const { value, unit } = split(text, what, where, hint);
+  const size = units[unit];
+  if (size !== undefined) return value * size;
+  const names = Object.keys(units).filter((name) => name !== '');
+  throw new TankhueError(
+    unit === '' ? 'unit-missing' : 'unit-unknown',
+    unit === ''
+      ? `expected ${what} with its unit (${names.join(', ')}); received ${quoted(text)}`
+      : `expected ${names.join(' or ')}; received ${quoted(unit)}`,
+    where,
+    hint,
+  );
+}
