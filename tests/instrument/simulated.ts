@@ -1,15 +1,8 @@
-import { uniformFloat64 } from 'pure-rand/distribution/uniformFloat64';
-import { xoroshiro128plus } from 'pure-rand/generator/xoroshiro128plus';
+import { seededRandom } from '../../src/numerics/random.ts';
 import { makeSpectrum, type Spectrum } from '../../src/spectrum/spectrum.ts';
 
-/** Normal deviates from a seed (Box and Muller). */
-export function normalDeviates(seed: number): () => number {
-  const generator = xoroshiro128plus(seed);
-  return () => {
-    const radius = Math.sqrt(-2 * Math.log(1 - uniformFloat64(generator)));
-    return radius * Math.cos(2 * Math.PI * uniformFloat64(generator));
-  };
-}
+/** Normal deviates from a seed. */
+export const normalDeviates = (seed: number): (() => number) => seededRandom(seed).normal;
 
 /** A scan of a known law of absorbance, in equal steps, nm. */
 export function scan(name: string, from: number, to: number, step: number, law: (nm: number) => number): Spectrum {

@@ -44,7 +44,9 @@ export function baselineOf(log: CheckLog, count: number = DEFAULT_BASELINE_COUNT
   const groups = new Map<string, number[]>();
   for (const i of chosen) {
     const group = centreGroup(log.points[i]!);
-    groups.set(group, [...(groups.get(group) ?? []), i]);
+    const members = groups.get(group);
+    if (members) members.push(i);
+    else groups.set(group, [i]);
   }
   const means = new Map(
     [...groups].map(([group, members]) => [group, meanOf(members.map((i) => aboveAssigned(log.points[i]!)))]),
@@ -69,7 +71,26 @@ export function baselineOf(log: CheckLog, count: number = DEFAULT_BASELINE_COUNT
     ? { value: means.get(SHARED_BIAS)!, uncertainty: standardDeviation / Math.sqrt(assigned.length) }
     : null;
   const baseline = { points: chosen, standardDeviation, degreesOfFreedom, centres, bias };
-  return { ...baseline, findings: doubtsAbout(baseline, residuals, log.unit) };
+  const roughLots = [...groups].filter(([, members]) => members.length < LEAST_FOR_CENTRE && groups.size > 1);
+  return {
+    ...baseline,
+    findings: [
+      ...doubtsAbout(baseline, residuals, log.unit),
+      ...roughLots.map(([lot, members]) => roughCentre(lot, members)),
+    ],
+  };
+}
+
+/** Points that fix a lot's centre to a quarter of a standard deviation. */
+const LEAST_FOR_CENTRE = 16;
+
+function roughCentre(lot: string, members: readonly number[]): Finding {
+  return {
+    code: 'lot-centre-rough',
+    severity: 'note',
+    message: `expected ${LEAST_FOR_CENTRE} baseline points or more for the centre of ${lot === SHARED_BIAS ? 'the lots with assigned values' : `lot ${lot}`}; received ${members.length}: it is known to ${(1 / Math.sqrt(members.length)).toFixed(2)} standard deviations, and the sums may take that for a shift`,
+    hint: 'measure the new lot beside the old one for longer, or write its assigned value',
+  };
 }
 
 /** All lots with an assigned value stand under one name; no lot can be called so, because sheets are trimmed. */

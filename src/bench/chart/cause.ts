@@ -9,16 +9,18 @@
 import { normalQuantile } from '../../numerics/distributions.ts';
 import type { CheckPoint } from './checkLog.ts';
 
+/** By the names an assay gives its fitted effects. */
 const LIKELY_CAUSE: Readonly<Record<string, string>> = {
   offset: 'blank, dirty or scratched windows, cell turned round: clean the cell, scan a new blank',
   slope: 'lamp or baseline drift: let the lamp warm up, scan a new blank',
-  scatter: 'dust, bubbles or turbidity: filter, let settle, refill',
-  wavelength_shift: 'wavelength scale: scan holmium oxide solution and verify the photometer',
+  'fine scatter': 'dust, bubbles or turbidity: filter, let settle, refill',
+  'coarse scatter': 'dirty cell or large particles: clean the cell, let settle, refill',
+  'light beside the sample': 'bubble, half-filled cell or stray light: refill, then verify the photometer',
   bandwidth: 'slit or optical resolution: check the slit setting',
+  wavelength: 'wavelength axis: scan holmium oxide solution and verify the photometer',
   path: 'cell or filling: same cell? filled to the brim? measure its path',
-  path_scale: 'cell or filling: same cell? filled to the brim? measure its path',
   dilution: 'glassware or a dilution slip: dilute again',
-  stray_light: 'stray light: verify with a cut-off solution, look for a lid left open',
+  'stray light': 'stray light: verify with a cut-off solution, look for a lid left open',
   temperature: 'temperature of the cell: wait, then scan again',
 };
 

@@ -26,5 +26,7 @@ export interface CheckLog {
   /** in time order */
   readonly points: readonly CheckPoint[];
   readonly modeNames: readonly string[];
+  /** whether the lines of the file stood in another order */
+  readonly wasReordered: boolean;
   readonly origin: SpectrumOrigin;
 }

@@ -58,7 +58,7 @@ export interface ChartAlarm {
   /** first and last signalled point, as written on the sheet */
   from: string;
   to: string;
-  /** where the change began: the cumulative sum's last zero, else the first signal */
+  /** where the change most likely began, at or before the first signal */
   since: string;
   direction: 'up' | 'down';
   signals: string[];
@@ -173,7 +173,7 @@ export function checkStandardChart(log: CheckLog, design: ChartDesign = DEFAULT_
     },
     averageRunLength: runLengths(design),
     points,
-    alarms: alarmsOf(log, baseline, deviations, signals, sums),
+    alarms: alarmsOf(log, baseline, deviations, signals, average, sums),
     missing: log.points.filter((point) => Number.isNaN(point.value)).map((point) => point.at),
     findings: [...baseline.findings, ...doubtsAboutLots(log, baseline)],
     assumed: assumptions(log, baseline),
@@ -196,59 +196,80 @@ function runLengths(design: ChartDesign): RunLengths {
   return { shift: SHIFTS, actionLimit, runRules, movingAverage: movingAverages, cumulativeSum, falseAlarmOfAll };
 }
 
-/** Neighbouring signalled points are one alarm; a missing point between them does not part them, a quiet one does. */
+/**
+ * Neighbouring signalled points on the same side are one alarm; a missing point between them does not part them, a quiet one
+ * does. The side of a point past the action limit is its own, that of every other signal the moving average's.
+ */
 function alarmsOf(
   log: CheckLog,
   baseline: Baseline,
   deviations: Float64Array,
   signals: readonly string[][],
+  average: Float64Array,
   sums: CumulativeSums,
 ): ChartAlarm[] {
+  const sideOf = (i: number): number =>
+    signals[i]!.length === 0 ? 0 : Math.sign(signals[i]!.includes(ACTION_RULE.code) ? deviations[i]! : average[i]!);
   const judged = [...deviations.keys()].filter((i) => !Number.isNaN(deviations[i]));
-  const runs: number[][] = [];
-  judged.forEach((i, j) => {
-    if (signals[i]!.length === 0) return;
-    if (j > 0 && signals[judged[j - 1]!]!.length > 0) runs[runs.length - 1]!.push(i);
-    else runs.push([i]);
-  });
   const baselinePoints = baseline.points.map((i) => log.points[i]!);
-  return runs.map((run) => {
-    const first = run[0]!;
-    const last = run[run.length - 1]!;
-    const direction = deviations[first]! > 0 ? 'up' : 'down';
-    const since = Math.min(first, (direction === 'up' ? sums.upSince : sums.downSince)[first]!);
-    const shifted = judged.filter((i) => i >= since && i <= last);
+  const alarms: ChartAlarm[] = [];
+  let end = 0;
+  for (let start = 0; start < judged.length; start = end) {
+    const first = judged[start]!;
+    const side = sideOf(first);
+    end = start + 1;
+    if (side === 0) continue;
+    while (end < judged.length && sideOf(judged[end]!) === side) end += 1;
+    const direction = side > 0 ? 'up' : 'down';
+    const sinceStart = beginningOf(judged, deviations, start, (side > 0 ? sums.upSince : sums.downSince)[first]!);
+    const shifted = judged.slice(sinceStart, end);
     const meanDeviation = shifted.reduce((sum, i) => sum + deviations[i]!, 0) / shifted.length;
     const moved = movedModes(
       log.modeNames,
       baselinePoints,
       shifted.map((i) => log.points[i]!),
     );
-    return {
+    const lotBefore = sinceStart > 0 ? log.points[judged[sinceStart - 1]!]!.lot : null;
+    alarms.push({
       from: log.points[first]!.at,
-      to: log.points[last]!.at,
-      since: log.points[since]!.at,
+      to: log.points[judged[end - 1]!]!.at,
+      since: log.points[shifted[0]!]!.at,
       direction,
-      signals: [...new Set(run.flatMap((i) => signals[i]!))],
+      signals: [...new Set(judged.slice(start, end).flatMap((i) => signals[i]!))],
       shift: {
         value: meanDeviation * baseline.standardDeviation,
         uncertainty: baseline.standardDeviation / Math.sqrt(shifted.length),
       },
       movedModes: moved,
-      suggestion: suggestionFor(log, since, moved),
-    };
-  });
+      suggestion: suggestionFor(log, log.points[first]!.lot, lotBefore, moved),
+    });
+  }
+  return alarms;
 }
 
-function suggestionFor(log: CheckLog, since: number, moved: readonly MovedMode[]): string {
-  const lot = log.points[since]!.lot;
-  const before = log.points.slice(0, since).filter((point) => !Number.isNaN(point.value));
-  if (before.length > 0 && before[before.length - 1]!.lot !== lot && moved.length === 0)
-    return `it began with lot ${lot}: its assigned value or the way it was made comes first`;
+/**
+ * Where the step that ends in a signal most likely began: the start s that makes (Σ_{s…signal} d)²/count largest, none before the
+ * cumulative sum last stood at zero (maximum likelihood for a lasting step; D. V. Hinkley, Biometrika 1970, 57, 1).
+ */
+function beginningOf(judged: readonly number[], deviations: Float64Array, signal: number, lastZero: number): number {
+  let best = signal;
+  let largest = -1;
+  let sum = 0;
+  for (let s = signal; s >= 0 && (s === signal || judged[s]! >= lastZero); s--) {
+    sum += deviations[judged[s]!]!;
+    const gain = (sum * sum) / (signal - s + 1);
+    if (gain > largest) [best, largest] = [s, gain];
+  }
+  return best;
+}
+
+function suggestionFor(log: CheckLog, lot: string, lotBefore: string | null, moved: readonly MovedMode[]): string {
   if (moved.length > 0)
     return `${moved[0]!.mode} moved with it (${moved[0]!.z.toFixed(1)} standard errors): ${moved[0]!.likelyCause}`;
+  if (lotBefore !== null && lotBefore !== lot)
+    return `it began with lot ${lot}: its assigned value or the way it was made comes first`;
   if (log.modeNames.length === 0)
-    return 'no fitted modes are logged, so no cause can be suggested: add columns such as mode_offset, mode_scatter, mode_wavelength_shift, mode_path';
+    return 'no fitted modes are logged, so no cause can be suggested: add columns such as mode_offset, mode_fine_scatter, mode_wavelength, mode_path';
   return 'no fitted mode moved: look at the check standard itself (air, age, evaporation), its dilution and the label';
 }
 
@@ -268,6 +289,7 @@ function assumptions(log: CheckLog, baseline: Baseline): string[] {
     ...(marked
       ? []
       : [`the first ${baseline.points.length} measured points are the baseline, because no line is marked`]),
+    ...(log.wasReordered ? ['lines were put in the order of their times'] : []),
     'points are independent and normal about a known centre; run lengths are stated for that',
     'missing points are passed over: nothing is filled in, and the sums stand still',
   ];
