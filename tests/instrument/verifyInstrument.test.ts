@@ -1,4 +1,5 @@
 import { describe, expect, test } from 'vitest';
+import { bandPosition } from '../../src/bench/instrument/bandPositions.ts';
 import { verifyInstrument } from '../../src/bench/instrument/verifyInstrument.ts';
 import { wavelengthScale } from '../../src/bench/instrument/wavelengthScale.ts';
 import { photometricScale } from '../../src/bench/instrument/photometricScale.ts';
@@ -51,13 +52,17 @@ describe('wavelength axis', () => {
     expect(findings.map(({ code }) => code)).toEqual(['wavelength-scale-stretched']);
   });
 
-  test('noise widens single bands', () => {
-    const quiet = wavelengthScale([{ test: 'holmium', spectrum: scan('ho', 330, 700, 0.5, holmium(0)) }]);
-    const noise = normalDeviates(7);
-    const noisy = wavelengthScale([
-      { test: 'holmium', spectrum: scan('ho', 330, 700, 0.5, (nm) => holmium(0)(nm) + 0.02 * noise()) },
-    ]);
-    expect(noisy.tests[0]!.uncertainty).toBeGreaterThan(1.2 * quiet.tests[0]!.uncertainty);
+  test('the uncertainty of a band is that of its noise: 68 % of 600 simulated bands within one', () => {
+    let inside = 0;
+    for (let seed = 1; seed <= 600; seed++) {
+      const noise = normalDeviates(seed);
+      const truth = 536.56 + (seed % 50) / 100;
+      const law = (nm: number) => 0.6 * Math.exp(-4 * Math.LN2 * ((nm - truth) / 4) ** 2) + 0.003 * noise();
+      const found = bandPosition(scan('band', 525, 548, 0.5, law), 536.56, 4)!;
+      if (Math.abs(found.position - truth) < found.uncertainty) inside += 1;
+    }
+    // ±3 standard deviations of a binomial count.
+    expect(Math.abs(inside / 600 - 0.6827)).toBeLessThan(0.057);
   });
 
   test('a solution without bands is said, and nothing is passed', () => {

@@ -5,6 +5,7 @@
 // Valid for   bands wider than the fit's half width; three points or more on each side.
 // Units       nm.
 // Source      ours.
+import { studentQuantile } from '../../numerics/distributions.ts';
 import { fitLinear } from '../../numerics/linearFit.ts';
 import type { Spectrum } from '../../spectrum/spectrum.ts';
 
@@ -17,6 +18,8 @@ export interface BandPosition {
 /** nm on either side of the maximum; three points for coarse scans. */
 const HALF_WIDTH = 1.5;
 const LEAST_SIDE = 3;
+/** Φ(1) */
+const ONE_SIGMA = 0.8413447460685429;
 const POWERS = [0, 1, 2, 3, 4];
 
 /** @returns null when there is no maximum within `reach` nm of `expected`, or too few points */
@@ -60,5 +63,10 @@ function maximumOfQuartic({ wavelength, absorbance }: Spectrum, centre: number, 
   let variance = 0;
   for (const p of POWERS.slice(1))
     for (const q of POWERS.slice(1)) variance += p * at ** (p - 1) * q * at ** (q - 1) * fit.covariance[p * 5 + q]!;
-  return { position: wavelength[centre]! + half * at, uncertainty: (half * Math.sqrt(variance)) / -curvature };
+  // Few points: the scatter is itself uncertain, so one standard uncertainty is Student's 68 %.
+  const widened = studentQuantile(ONE_SIGMA, fit.degreesOfFreedom);
+  return {
+    position: wavelength[centre]! + half * at,
+    uncertainty: (widened * half * Math.sqrt(variance)) / -curvature,
+  };
 }

@@ -9,8 +9,10 @@ import type { Finding } from '../../finding.ts';
 import { TankhueError } from '../../errors.ts';
 import type { Spectrum } from '../../spectrum/spectrum.ts';
 import { baselineStability, DEFAULT_BASELINE_LIMITS, type BaselineLimits } from './baselineStability.ts';
+import type { MeasurementModel } from '../planning/measurementModel.ts';
 import { cellPaths } from './cellPath.ts';
 import { worstConformity } from './conformity.ts';
+import { instrumentConsequences } from './consequence.ts';
 import { opticalResolution } from './opticalResolution.ts';
 import { photometricScale } from './photometricScale.ts';
 import { scansOf, type InstrumentScan } from './scans.ts';
@@ -22,22 +24,29 @@ export interface VerificationOptions {
   /** ISO date, or empty */
   readonly checkedAt: string;
   readonly baselineLimits: BaselineLimits;
+  /** what the scans' sheet left open and was taken for granted: one sentence each */
+  readonly assumed: readonly string[];
 }
 
 export const DEFAULT_VERIFICATION: VerificationOptions = {
   instrument: '',
   checkedAt: '',
   baselineLimits: DEFAULT_BASELINE_LIMITS,
+  assumed: [],
 };
 
 /** Standard uncertainty of an axis nobody checked, nm, and noise of a point nobody measured, absorbance [common practice]. */
 const UNCHECKED_AXIS = 0.3;
 const UNMEASURED_NOISE = 0.001;
 
-/** @throws TankhueError `no-scans`, and what single tests refuse */
+/**
+ * @param models pairs of a calibration, to say what the faults mean for an assay; without them that part stays empty
+ * @throws TankhueError `no-scans`, and what single tests refuse
+ */
 export function verifyInstrument(
   scans: readonly InstrumentScan[],
   options: VerificationOptions = DEFAULT_VERIFICATION,
+  models: readonly MeasurementModel[] = [],
 ): InstrumentRecord {
   if (scans.length === 0)
     throw new TankhueError(
@@ -61,7 +70,7 @@ export function verifyInstrument(
   );
   const outcomes = [wavelength, scale, dark, baseline, resolution, cells];
   const tests = outcomes.flatMap((outcome) => outcome.tests);
-  return {
+  const record: InstrumentRecord = {
     schema: 'tankhue/instrument/1',
     instrument: options.instrument,
     checkedAt: options.checkedAt,
@@ -77,6 +86,7 @@ export function verifyInstrument(
     consequences: [],
     findings: [...outcomes.flatMap((outcome) => outcome.findings), ...untested(scans)],
     assumed: [
+      ...options.assumed,
       'limits are kept or broken only past a guard band of 1.96 standard uncertainties (JCGM 106); between is undecided',
       ...(wavelength.property
         ? []
@@ -84,6 +94,7 @@ export function verifyInstrument(
     ],
     inputs: inputsOf(scans),
   };
+  return { ...record, consequences: instrumentConsequences(record, models) };
 }
 
 /** What an assay leans on and nobody looked at. */
