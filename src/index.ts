@@ -36,3 +36,34 @@ export { NO_FAULTS, type SimulatedFaults } from './estimation/simulateFaults.ts'
 export { compositionAt, parseComposition, sideHolding, type Composition } from './electrolyte/composition.ts';
 export { csvLine } from './report/csv.ts';
 export { spectraCsv, spectraJcamp } from './report/spectraText.ts';
+export type * from './assay/instrumentRecord.ts';
+export { uncertaintyFromPrecision } from './assay/precisionRecord.ts';
+export type * from './assay/precisionRecord.ts';
+export {
+  verifyInstrument,
+  DEFAULT_VERIFICATION,
+  type VerificationOptions,
+} from './bench/instrument/verifyInstrument.ts';
+export type * from './bench/instrument/scans.ts';
+export {
+  readVerificationSheet,
+  scansOfRows,
+  type SpectrumLoader,
+  type VerificationScans,
+} from './io/verificationSheet.ts';
+export { readInstrumentRecord } from './io/instrumentRecordFile.ts';
+export { instrumentText } from './report/instrumentText.ts';
+export { checkStandardChart, DEFAULT_CHART_DESIGN, type CheckStandardChart } from './bench/chart/checkStandardChart.ts';
+export type * from './bench/chart/checkLog.ts';
+export { readCheckLog } from './io/checkLogSheet.ts';
+export { chartText } from './report/chartText.ts';
+export { precisionStudy } from './bench/precision/precisionStudy.ts';
+export { readReplicateSheet } from './io/replicateSheet.ts';
+export { readPrecisionRecord } from './io/precisionRecordFile.ts';
+export { precisionText } from './report/precisionText.ts';
+export * from './bench/glassware.ts';
+export { measurementModelOf, type MeasurementModel } from './bench/planning/measurementModel.ts';
+export { photometerTraits } from './bench/planning/photometerTraits.ts';
+export { DEFAULT_WISH, MARKET_PATHS, marketCell, planMeasurement } from './bench/planning/planMeasurement.ts';
+export type * from './bench/planning/planMeasurement.ts';
+export { measurementPlanText } from './report/measurementPlanText.ts';

@@ -1,0 +1,123 @@
+import { dirname, isAbsolute, join } from 'node:path';
+import type { Command } from 'commander';
+import {
+  findColumn,
+  instrumentText,
+  measurementModelOf,
+  parseLength,
+  parsePositive,
+  readVerificationSheet,
+  scansOfRows,
+  verifyInstrument,
+  DEFAULT_VERIFICATION,
+  type ReadOptions,
+  type SpectrumLoader,
+  type VerificationScans,
+} from '../index.ts';
+import { readFileBytes, writeWhole } from '../io/files.ts';
+import { loadCalibration, SpectraShelf } from './inputs.ts';
+import { optionOf, readingOptions, readOptionsOf, tell } from './options.ts';
+
+interface VerifyOptions extends ReadOptions {
+  test?: string;
+  name: string;
+  date: string;
+  path?: number;
+  concentration?: number;
+  solution?: string;
+  cell?: string;
+  blank?: string;
+  calibration?: string;
+  out?: string;
+  format: 'text' | 'json';
+}
+
+export function register(program: Command): void {
+  const command = program
+    .command('verify')
+    .description('scans of holmium, dichromate, cut-off solutions, cells and blanks → is the photometer fit for assays')
+    .argument('<file...>', 'a sheet of scans (CSV with a column test), or files of spectra with --test')
+    .option('--test <name>', 'what the files are: holmium, dichromate-perchloric, cut-off, empty-cell, blank …')
+    .option('--path <length>', 'path of the cell, e.g. 10mm', optionOf('--path', parseLength))
+    .option(
+      '--concentration <c>',
+      'of potassium dichromate, e.g. "60 mg/L"',
+      optionOf('--concentration', (text, where) => parsePositive(text, 'mg/L', where)),
+    )
+    .option('--solution <name>', 'cut-off solution: potassium-chloride or sodium-nitrite')
+    .option('--cell <name>', 'name of the cell under test')
+    .option('--blank <file>', 'blank of the dichromate solution')
+    .option('--name <name>', 'name of the photometer, for the record', '')
+    .option('--date <date>', 'when it was checked, for the record, e.g. 2026-05-17', '')
+    .option('--calibration <file>', 'what the faults mean for assays with this calibration; the shipped one without it')
+    .option('--out <file>', 'write the record that later assays take with --instrument')
+    .option('--format <format>', 'text or json', 'text')
+    .action((files: string[], options: VerifyOptions) => run(command, files, options));
+  for (const option of readingOptions()) command.addOption(option);
+}
+
+function run(command: Command, files: string[], options: VerifyOptions): void {
+  if (!['text', 'json'].includes(options.format))
+    command.error(`expected --format text or json; received ${options.format}`);
+  if (options.test === undefined && files.length > 1)
+    command.error('expected one sheet, or --test NAME to say what these spectra are');
+  const shelf = new SpectraShelf(readOptionsOf(options), tell);
+  const { scans, assumed, unknownColumns } =
+    options.test === undefined ? scansOfSheet(files[0]!, shelf) : scansOfFiles(files, options.test, options, shelf);
+  if (unknownColumns.length > 0) tell(`${files[0]}: columns kept but not used: ${unknownColumns.join(', ')}`);
+  const { calibration } = loadCalibration(options.calibration);
+  const record = verifyInstrument(
+    scans,
+    { ...DEFAULT_VERIFICATION, instrument: options.name, checkedAt: options.date, assumed },
+    calibration.pairs.map(measurementModelOf),
+  );
+  const json = `${JSON.stringify(record, null, 1)}\n`;
+  if (options.out !== undefined) writeWhole(options.out, json, [...files, ...shelf.paths]);
+  process.stdout.write(options.format === 'json' ? json : instrumentText(record));
+  if (record.state === 'failed') process.exitCode = 4;
+}
+
+function scansOfSheet(sheet: string, shelf: SpectraShelf): VerificationScans {
+  const load: SpectrumLoader = (file, column, where) =>
+    findColumn(shelf.file(isAbsolute(file) ? file : join(dirname(sheet), file)).spectra, column, where);
+  return readVerificationSheet(readFileBytes(sheet), sheet, load);
+}
+
+/** Which option stands for which column of the sheet, for messages. */
+const OPTION_OF: Readonly<Record<string, string>> = {
+  test: '--test',
+  path_mm: '--path',
+  concentration_mg_L: '--concentration',
+  solution: '--solution',
+  cell: '--cell',
+  blank_file: '--blank',
+};
+
+/** Every column of every file is a scan of the one test. */
+function scansOfFiles(
+  files: readonly string[],
+  test: string,
+  options: VerifyOptions,
+  shelf: SpectraShelf,
+): VerificationScans {
+  const shared: [string, string | undefined][] = [
+    ['test', test],
+    ['path_mm', options.path === undefined ? undefined : String(10 * options.path)],
+    ['concentration_mg_L', options.concentration?.toString()],
+    ['solution', options.solution],
+    ['cell', options.cell],
+    ['blank_file', options.blank],
+  ];
+  const given = shared.filter((entry): entry is [string, string] => entry[1] !== undefined);
+  const rows = files.flatMap((file) =>
+    shelf.file(file).spectra.map(({ name }, i) => ({
+      line: i + 1,
+      cells: new Map([...given, ['file', file], ['column', name]]),
+      where: (column: string) => OPTION_OF[column] ?? `a sheet with the column ${column}`,
+    })),
+  );
+  const columns = [...given.map(([column]) => column), 'file', 'column'];
+  return scansOfRows({ rows, columns, unknownColumns: [], decimalComma: false }, (file, column, where) =>
+    findColumn(shelf.file(file).spectra, column, where),
+  );
+}
