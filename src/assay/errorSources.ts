@@ -74,7 +74,17 @@ export function errorSourcesOf(
     leverage * spectral[3]!,
   ]);
   const total = solution.lower + solution.higher;
-  const { betweenGroup } = pairCalibration;
+  const { betweenGroup, labelUncertainty } = pairCalibration;
+  const carried = Math.sqrt(fit.leverage);
+  add('labels of the standards', `label shares:${calibrationKey}`, [
+    -total * carried * labelUncertainty.share,
+    total * carried * labelUncertainty.share,
+  ]);
+  add(
+    'labels of the standards',
+    `label totals:${calibrationKey}`,
+    scaled([solution.lower, solution.higher], carried * labelUncertainty.total),
+  );
   add('between preparations, state of charge', `between S:${calibrationKey}`, [
     -total * betweenGroup.share,
     total * betweenGroup.share,

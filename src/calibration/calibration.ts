@@ -36,6 +36,8 @@ export interface PairCalibration {
   readonly model: PairModel;
   readonly constants: readonly ConstantRecord[];
   readonly labelsMoved: boolean;
+  /** root mean square of the labels' uncertainty where they moved, else 0: share (1), total (relative); reaches a sample through leverage */
+  readonly labelUncertainty: { readonly share: number; readonly total: number };
   /** what validation shows beyond the stated uncertainties, standard deviations: share of the higher species (1), total vanadium (relative) */
   readonly betweenGroup: { readonly share: number; readonly total: number; readonly freedom: number };
   /** how well spectra of left-out standards matched: ln(χ²/ν), mean and standard deviation */
@@ -98,6 +100,8 @@ export interface Evidence {
   readonly modeCount: number;
   /** share of the higher species, root mean square over left-out standards */
   readonly rmse: number;
+  /** mean negative log density that the intervals give to the errors made (nats) */
+  readonly surprise: number;
 }
 
 export interface LimitRecord {

@@ -65,7 +65,7 @@ export interface Chosen {
 
 const DEFAULT_NOISE = 0.001;
 const DEFAULT_MODES = 8;
-const NOISES = [0.0002, 0.0003, 0.0005, 0.001, 0.002, 0.004];
+const NOISES = [0.0003, 0.0005, 0.001, 0.002, 0.004];
 const MODE_COUNTS = [2, 4, 8, 12];
 /** … or unless it lowers the left-out misfit by this part without making shares worse by the next. */
 const MARGIN_MISFIT = 0.2;
@@ -96,7 +96,14 @@ export function choose(
       const leftOut = leaveGroupsOut(standards, (subset) => fitChoicesFor(subset, choice, constants), priors);
       const rmse = rootMeanSquare(leftOut.map((x) => x.shareError));
       const { labelsMove: labelsMoved, noise, modeCount } = choice;
-      evidence.push({ model: modelName(choice.plans), labelsMoved, noise, modeCount, rmse });
+      evidence.push({
+        model: modelName(choice.plans),
+        labelsMoved,
+        noise,
+        modeCount,
+        rmse,
+        surprise: surprise(leftOut),
+      });
       return { choice, leftOut, rmse };
     } catch {
       // A subset that cannot determine this model rules the model out; the record shows what could be compared.
@@ -113,7 +120,7 @@ export function choose(
   for (const result of compared.slice(1)) if (isBetterModel(result, best)) best = result;
   if (labelsMayMove) {
     const moved = attempt({ ...best.choice, labelsMove: true });
-    if (moved && moved.rmse < best.rmse * (1 - MARGIN_LABELS)) best = moved;
+    if (moved && labelsShouldMove(standards, moved, best)) best = moved;
   }
   const tuned = NOISES.flatMap((noise) =>
     MODE_COUNTS.map((modeCount) => attempt({ ...best.choice, noise, modeCount })),
@@ -136,6 +143,17 @@ function isBetterModel(one: Attempt, best: Attempt): boolean {
   return misfit(one) < misfit(best) * (1 - MARGIN_MISFIT) && one.rmse < best.rmse * (1 + TOLERATED_LOSS);
 }
 
+/**
+ * Stated label uncertainties are evidence of their own: labels move when that describes the errors made at least as well. Unstated ones
+ * have to earn it by accuracy.
+ */
+function labelsShouldMove(standards: PairStandards, moved: Attempt, held: Attempt): boolean {
+  if (moved.rmse < held.rmse * (1 - MARGIN_LABELS)) return true;
+  const stated = standards.rows.every((row) => row.labelUncertainty > 0);
+  return stated && moved.rmse < held.rmse * (1 + TOLERATED_LOSS) && surprise(moved.leftOut) < surprise(held.leftOut);
+}
+
+/** Among the nearly most accurate the one whose intervals describe the errors made best. */
 function leastSurprising(attempts: readonly Attempt[]): Attempt {
   const least = Math.min(...attempts.map((attempt) => attempt.rmse));
   return attempts

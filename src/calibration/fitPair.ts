@@ -53,6 +53,7 @@ export interface FitChoices {
 }
 
 export interface PairFit {
+  readonly rows: readonly PairStandard[];
   readonly model: PairModel;
   readonly linear: LinearSpectra;
   /** per standard: relative path error, and how far its label moved (mol/L in the cuvette) */
@@ -70,7 +71,7 @@ export interface StandardMove {
 const MOST_ROUNDS = 40;
 const UNWEIGHTED_ROUNDS = 2;
 /** change of a path or label, in units of its uncertainty, below which nothing that matters still moves */
-const SETTLED = 0.03;
+const SETTLED = 0.01;
 
 /** Wavelength errors of single standards are left to the unnamed modes. */
 const NO_SHIFT = 0;
@@ -96,7 +97,7 @@ export function fitPair(standards: PairStandards, choices: FitChoices): PairFit 
     fit = linearFit(standards, choices, moved, round < UNWEIGHTED_ROUNDS);
     converged = round > UNWEIGHTED_ROUNDS && change < SETTLED;
   }
-  return { ...fit, moved, converged };
+  return { ...fit, rows, moved, converged };
 }
 
 /** Residual sum of squares of an unweighted fit with free paths: what association constants are profiled on. */
@@ -117,7 +118,7 @@ function linearFit(
   choices: FitChoices,
   moved: readonly StandardMove[],
   unweighted: boolean,
-): Omit<PairFit, 'moved' | 'converged'> {
+): Omit<PairFit, 'rows' | 'moved' | 'converged'> {
   const { rows } = standards;
   const amounts = amountsOf(standards.pair, choices.associations);
   const out = newAmounts(2 + choices.associations.length);

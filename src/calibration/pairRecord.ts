@@ -19,7 +19,14 @@ import type {
 } from './calibration.ts';
 import type { Chosen } from './choose.ts';
 import type { PairFit, PairStandards } from './fitPair.ts';
-import { excessOf, rootMeanSquare, type Excess, type LeftOut } from './validate.ts';
+import {
+  excessOf,
+  labelUncertaintyOf,
+  NO_LABEL_UNCERTAINTY,
+  rootMeanSquare,
+  type Excess,
+  type LeftOut,
+} from './validate.ts';
 
 /** Significant digits kept in a calibration: below the noise of any photometer, so that the file stays small and reads back exactly. */
 const KEPT_DIGITS = 9;
@@ -42,6 +49,7 @@ export function pairRecord(
     model,
     constants: constantsOf(standards, model),
     labelsMoved: chosen.choice.labelsMove,
+    labelUncertainty: chosen.choice.labelsMove ? labelUncertaintyOf(standards.rows) : NO_LABEL_UNCERTAINTY,
     betweenGroup,
     match: {
       mean: chosen.leftOut.length > 0 ? mean : 0,

@@ -53,6 +53,7 @@ const pairCalibration = v.strictObject({
     }),
   ),
   labelsMoved: v.boolean(),
+  labelUncertainty: v.strictObject({ share: nonNegative, total: nonNegative }),
   betweenGroup: v.strictObject({ share: nonNegative, total: nonNegative, freedom: positive }),
   match: v.strictObject({ mean: finite, deviation: nonNegative, count: nonNegative }),
   faultScales: v.record(text, positive),

@@ -12,7 +12,7 @@ import type { ModePriors } from '../estimation/namedModes.ts';
 import { namedModes } from '../estimation/namedModes.ts';
 import { prepare } from '../estimation/prepare.ts';
 import { reduce, solve } from '../estimation/solve.ts';
-import { concentrationCovariance, shareAndTotal } from '../estimation/uncertainty.ts';
+import { calibrationLeverage, concentrationCovariance, shareAndTotal } from '../estimation/uncertainty.ts';
 import { fitPair, type FitChoices, type PairFit, type PairStandard, type PairStandards } from './fitPair.ts';
 
 /** One standard predicted by a calibration that did not contain its group. */
@@ -50,21 +50,26 @@ export function leaveGroupsOut(
   const groups = [...new Set(standards.rows.map((row) => row.group))];
   return groups.flatMap((group) => {
     const rest = { ...standards, rows: standards.rows.filter((row) => row.group !== group) };
-    const fit = fitPair(rest, refit(rest));
+    const choices = refit(rest);
     return predict(
-      fit,
+      fitPair(rest, choices),
       standards.rows.filter((row) => row.group === group),
       priors,
+      choices.labelsMove,
       foreign,
     );
   });
 }
 
-/** Assays standards with a fit as if they were samples. */
+/**
+ * Assays standards with a fit as if they were samples. Where labels were held, their errors are in the residuals and so in the modes
+ * already; where they moved, the label's own uncertainty comes on top.
+ */
 export function predict(
   fit: PairFit,
   rows: readonly PairStandard[],
   priors: ModePriors,
+  labelsMove: boolean,
   foreign: readonly ForeignSpectrum[] = [],
 ): LeftOut[] {
   const prepared = prepare(fit.model, namedModes(fit.model.wavelength, priors));
@@ -83,15 +88,18 @@ export function predict(
       concentrationCovariance(prepared, solution, row.pathLength),
     );
     const total = row.lower + row.higher;
+    const own = labelsMove ? labelUncertaintyOf([row]) : NO_LABEL_UNCERTAINTY;
+    const common = labelsMove ? labelUncertaintyOf(fit.rows) : NO_LABEL_UNCERTAINTY;
+    const leverage = calibrationLeverage(prepared, solution, row.pathLength);
     return {
       name: row.name,
       group: row.group,
       share: row.higher / total,
       shareError: found.share - row.higher / total,
-      shareUncertainty: Math.hypot(found.shareUncertainty, labelShareUncertainty(row)),
+      shareUncertainty: Math.hypot(found.shareUncertainty, own.share, Math.sqrt(leverage) * common.share),
       total,
       totalError: found.total / total - 1,
-      totalUncertainty: Math.hypot(found.totalUncertainty / total, (row.labelUncertainty * Math.SQRT2) / total),
+      totalUncertainty: Math.hypot(found.totalUncertainty / total, own.total, Math.sqrt(leverage) * common.total),
       reducedChiSquare: solution.chiSquare / (prepared.used.length - 2),
       misfit: rootMeanSquare(Array.from(prepared.used, (i, l) => row.absorbance[i]! - fitted[l]!)),
       faultScores: Object.fromEntries(
@@ -101,10 +109,24 @@ export function predict(
   });
 }
 
-/** What the label's own uncertainty makes of the share, both concentrations independent. */
-function labelShareUncertainty(row: PairStandard): number {
-  const total = row.lower + row.higher;
-  return (row.labelUncertainty * Math.hypot(row.lower, row.higher)) / total ** 2;
+export interface LabelUncertainty {
+  /** share of the higher species, 1 */
+  readonly share: number;
+  /** relative */
+  readonly total: number;
+}
+
+export const NO_LABEL_UNCERTAINTY: LabelUncertainty = { share: 0, total: 0 };
+
+/** Root mean square over standards of what the labels' uncertainties make of share and total, both concentrations independent. */
+export function labelUncertaintyOf(rows: readonly PairStandard[]): LabelUncertainty {
+  const freedom = (row: PairStandard): number => row.labelUncertainty || row.labelFreedom;
+  return {
+    share: rootMeanSquare(
+      rows.map((row) => (freedom(row) * Math.hypot(row.lower, row.higher)) / (row.lower + row.higher) ** 2),
+    ),
+    total: rootMeanSquare(rows.map((row) => (freedom(row) * Math.SQRT2) / (row.lower + row.higher))),
+  };
 }
 
 /** Standard deviations beyond the stated uncertainties, for share and relative total. */
