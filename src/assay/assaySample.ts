@@ -69,7 +69,7 @@ export function assaySample(
   const findings = [
     ...labelFindings(sample, choice),
     ...opticalFindings(fit),
-    ...domainFindings(fit),
+    ...domainFindings(fit, numbers.averageOxidationState.uncertainty!),
     ...uncertaintyFindings(fit, numbers.averageOxidationState.uncertainty!),
     ...sheetFindings(sample, calibration, offsetOf(fit)),
     ...referenceFindings(inUse),

@@ -11,6 +11,8 @@ import { scaledScore, type PairFitOfSample } from './pairFit.ts';
 
 /** Largest score of some ten directions that about 1 % of sound spectra exceed. */
 const SCORE_LIMIT = 3.2;
+/** The path shows in one direction only, and only where there is a complex. */
+const PATH_LIMIT = 2.3;
 const MATCH_CAUTION = 3.3;
 const MATCH_WITHHOLD = 6;
 const INFORMATION_NEEDED = 0.6;
@@ -84,10 +86,10 @@ const CAUSES: Readonly<Record<string, Cause>> = {
 
 export function opticalFindings(fit: PairFitOfSample): Finding[] {
   const findings = [...maskFindings(fit), ...foreignFindings(fit)];
-  const worst = fit.faults
-    .filter((fault) => fault.name in CAUSES)
-    .sort((a, b) => Math.abs(scaledScore(fit, b)) - Math.abs(scaledScore(fit, a)))[0];
-  const named = worst && Math.abs(scaledScore(fit, worst)) > SCORE_LIMIT ? worst : null;
+  const excess = (fault: FaultScore): number =>
+    Math.abs(scaledScore(fit, fault)) / (fault.name === 'path' ? PATH_LIMIT : SCORE_LIMIT);
+  const worst = fit.faults.filter((fault) => fault.name in CAUSES).sort((a, b) => excess(b) - excess(a))[0];
+  const named = worst && excess(worst) > 1 ? worst : null;
   if (named) findings.push(causeFinding(fit, named));
   if (fit.match > MATCH_CAUTION) findings.push(matchFinding(fit, named));
   return findings;

@@ -1,5 +1,5 @@
 // What        One pair of a calibration tried on one spectrum, and how well it fits compared with left-out standards.
-// Equation    match = (ln(χ²/ν) − m)/(d √(1 + 1/n)), m and d from left-out standards.
+// Equation    match = (ln(χ²/(1 + h)/ν) − m)/(d √(1 + 1/n)), m and d from left-out standards, h leverage of the calibration.
 // Why so      The unnamed modes come from a limited number of standards, so χ² of a sound spectrum is not χ²-distributed; the standards that
 //             were left out show how it is distributed.
 // Valid for   calibrations with a validation; with one group left-out single standards serve.
@@ -74,7 +74,7 @@ export function fitSampleByPair(
     share: found.share,
     shareUncertainty: found.shareUncertainty * brightness,
     match:
-      (Math.log(solution.chiSquare / brightness ** 2 / freedom) - mean) /
+      (Math.log(solution.chiSquare / (brightness ** 2 * (1 + leverage)) / freedom) - mean) /
       (Math.max(deviation, 0.3) * Math.sqrt(1 + 1 / Math.max(1, count))),
     faults: scoreFaults(prepared, absorbance, solution, cuvette, [
       ...cuvetteFaults(prepared, fitted),
@@ -103,4 +103,4 @@ function informationLeft(prepared: Prepared, usable: readonly boolean[]): number
 
 /** Scores in units of what left-out standards showed. */
 export const scaledScore = (fit: PairFitOfSample, fault: FaultScore): number =>
-  fault.score / fit.brightness / (fit.pairCalibration.faultScales[fault.name] ?? 1);
+  fault.score / (fit.brightness * Math.sqrt(1 + fit.leverage)) / (fit.pairCalibration.faultScales[fault.name] ?? 1);

@@ -133,7 +133,7 @@ const ABOVE = 1.15;
 const LEVERAGE_CAUTION = 1;
 const LEVERAGE_WITHHOLD = 4;
 
-export function domainFindings(fit: PairFitOfSample): Finding[] {
+export function domainFindings(fit: PairFitOfSample, uncertainty: number): Finding[] {
   const { domain } = fit.pairCalibration;
   const total = fit.solution.lower + fit.solution.higher;
   const [, higher] = speciesOfPair(fit.pairCalibration.pair);
@@ -154,7 +154,7 @@ export function domainFindings(fit: PairFitOfSample): Finding[] {
   return [
     finding(
       'outside-calibration',
-      fit.leverage > LEVERAGE_WITHHOLD ? 'withhold' : 'caution',
+      fit.leverage > LEVERAGE_WITHHOLD && uncertainty > UNCERTAIN_CAUTION ? 'withhold' : 'caution',
       `outside the standards: ${said.join('; ')} at ${millimetresFromCentimetres(fit.cuvette.pathLength)} mm`,
       'extend the calibration with standards there, or dilute into its range',
     ),

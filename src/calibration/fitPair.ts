@@ -72,6 +72,8 @@ const MOST_ROUNDS = 40;
 const UNWEIGHTED_ROUNDS = 2;
 /** change of a path or label, in units of its uncertainty, below which nothing that matters still moves */
 const SETTLED = 0.01;
+/** … and above which the fit is said not to have settled */
+const UNSETTLED = 0.05;
 
 /** Wavelength errors of single standards are left to the unnamed modes. */
 const NO_SHIFT = 0;
@@ -89,15 +91,14 @@ export function fitPair(standards: PairStandards, choices: FitChoices): PairFit 
     );
   let moved: StandardMove[] = rows.map(() => ({ path: 0, lower: 0, higher: 0 }));
   let fit = linearFit(standards, choices, moved, true);
-  let converged = false;
-  for (let round = 1; round < MOST_ROUNDS && !converged; round++) {
+  let change = Infinity;
+  for (let round = 1; round < MOST_ROUNDS && (round <= UNWEIGHTED_ROUNDS + 1 || change > SETTLED); round++) {
     const next = moveStandards(rows, fit.model, choices, moved);
-    const change = largestChange(rows, moved, next);
+    change = largestChange(rows, moved, next);
     moved = next;
     fit = linearFit(standards, choices, moved, round < UNWEIGHTED_ROUNDS);
-    converged = round > UNWEIGHTED_ROUNDS && change < SETTLED;
   }
-  return { ...fit, rows, moved, converged };
+  return { ...fit, rows, moved, converged: change <= UNSETTLED };
 }
 
 /** Residual sum of squares of an unweighted fit with free paths: what association constants are profiled on. */

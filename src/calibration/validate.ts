@@ -28,6 +28,7 @@ export interface LeftOut {
   /** relative */
   readonly totalError: number;
   readonly totalUncertainty: number;
+  /** χ²/ν over 1 + leverage: a prediction carries the errors of the calibration's spectra too */
   readonly reducedChiSquare: number;
   /** root mean square of measured − fitted, absorbance */
   readonly misfit: number;
@@ -100,10 +101,13 @@ export function predict(
       total,
       totalError: found.total / total - 1,
       totalUncertainty: Math.hypot(found.totalUncertainty / total, own.total, Math.sqrt(leverage) * common.total),
-      reducedChiSquare: solution.chiSquare / (prepared.used.length - 2),
+      reducedChiSquare: solution.chiSquare / (1 + leverage) / (prepared.used.length - 2),
       misfit: rootMeanSquare(Array.from(prepared.used, (i, l) => row.absorbance[i]! - fitted[l]!)),
       faultScores: Object.fromEntries(
-        scoreFaults(prepared, row.absorbance, solution, cuvette, shapes).map((fault) => [fault.name, fault.score]),
+        scoreFaults(prepared, row.absorbance, solution, cuvette, shapes).map((fault) => [
+          fault.name,
+          fault.score / Math.sqrt(1 + leverage),
+        ]),
       ),
     };
   });

@@ -63,30 +63,27 @@ describe.skipIf(!sharedSpectraPresent)('99 published spectra, 1.22 mol/L left ou
     ['negative', 0.7],
     ['composite', 0.7],
     ['positive', 0.95],
-  ] as const)(
-    '%s side: root mean square error at most %s points, none withheld, 95 %% intervals hold',
-    (side, limit) => {
-      const results = leftOut
-        .filter((standard) => sideOf(standard) === side)
-        .map((standard) => {
-          const result = assayed(standard, calibration!);
-          const quantity = side === 'composite' ? result.averageOxidationState : result.stateOfCharge;
-          return {
-            result,
-            error: 100 * (quantity.value! - labelOf(standard)),
-            uncertainty: 100 * quantity.uncertainty!,
-          };
-        });
-      expect(results).toHaveLength(11);
-      expect(results.filter(({ result }) => result.state === 'withheld')).toEqual([]);
-      const rms = Math.sqrt(results.reduce((sum, { error }) => sum + error * error, 0) / results.length);
-      expect(rms).toBeLessThan(limit);
-      const inside = results.filter(({ error, uncertainty }) => Math.abs(error) <= 1.96 * uncertainty).length;
-      expect(inside).toBeGreaterThanOrEqual(10);
-      const widths = results.map(({ uncertainty }) => 1.96 * uncertainty).sort((a, b) => a - b);
-      expect(widths[5]!).toBeLessThan(2.5);
-    },
-  );
+  ] as const)('%s side: root mean square error at most %s points, none withheld, intervals hold', (side, limit) => {
+    const results = leftOut
+      .filter((standard) => sideOf(standard) === side)
+      .map((standard) => {
+        const result = assayed(standard, calibration!);
+        const quantity = side === 'composite' ? result.averageOxidationState : result.stateOfCharge;
+        return {
+          result,
+          error: 100 * (quantity.value! - labelOf(standard)),
+          uncertainty: 100 * quantity.uncertainty!,
+        };
+      });
+    expect(results).toHaveLength(11);
+    expect(results.filter(({ result }) => result.state === 'withheld')).toEqual([]);
+    const rms = Math.sqrt(results.reduce((sum, { error }) => sum + error * error, 0) / results.length);
+    expect(rms).toBeLessThan(limit);
+    const inside = results.filter(({ error, uncertainty }) => Math.abs(error) <= 1.96 * uncertainty).length;
+    expect(inside).toBeGreaterThanOrEqual(10);
+    const widths = results.map(({ uncertainty }) => 1.96 * uncertainty).sort((a, b) => a - b);
+    expect(widths[5]!).toBeLessThan(2.5);
+  });
 
   test('the three pairs tell their side: an exchanged label is seen', () => {
     const positive = leftOut.find((standard) => standard.name.startsWith('V4') && labelOf(standard) === 0.5)!;
