@@ -15,14 +15,9 @@ export type { Standard } from './calibration/standard.ts';
 export { assaySample, DEFAULT_ASSAY_OPTIONS, type CalibrationInUse } from './assay/assaySample.ts';
 export type { AssayOptions, BlankState, Sample } from './assay/sample.ts';
 export type * from './assay/result.ts';
-export {
-  findColumn,
-  parseSpectra,
-  understoodText,
-  type ReadOptions,
-  type SpectraRead,
-  type Understood,
-} from './io/spectra.ts';
+export { findColumn, parseSpectra, parseSpectraChunks } from './io/spectra.ts';
+export type { AxisUnit, Layout, OrdinateUnit, ReadOptions, Separator } from './io/readOptions.ts';
+export { understoodText, type SpectraRead, type Understood, type UnderstoodSpectrum } from './io/understood.ts';
 export { parseDilution, parseInUnits, parseLength, parsePositive, parseTemperature } from './io/quantityText.ts';
 export { readSamplesSheet, type SamplesRow } from './io/samplesSheet.ts';
 export { readStandardsSheet, type StandardsRow } from './io/standardsSheet.ts';

@@ -18,5 +18,7 @@ export const absorbanceFromMilliabsorbance = (milliabsorbance: number): number =
 /** Wavelength in nm of a wavenumber in cm⁻¹ (and the other way round: the rule is its own inverse). */
 export const nanometresFromWavenumber = (wavenumber: number): number => 1e7 / wavenumber;
 
+export const nanometresFromMicrometres = (micrometres: number): number => micrometres * 1000;
+
 /** Faraday constant in ampere-hours per mole of electrons: 96485.33212 C/mol / 3600 (CODATA 2018, exact from the SI definition). */
 export const AMPERE_HOURS_PER_MOLE = 96485.33212331 / 3600;

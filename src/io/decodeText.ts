@@ -2,24 +2,6 @@ import { TankhueError } from '../errors.ts';
 
 export type Encoding = 'UTF-8' | 'UTF-16LE' | 'UTF-16BE' | 'Latin-1';
 
-/** Byte-order mark first, then the zero bytes of UTF-16, then whether the bytes are UTF-8; what is left is Latin-1. */
-export function encodingOf(head: Uint8Array): { encoding: Encoding; skip: number } {
-  if (head[0] === 0xef && head[1] === 0xbb && head[2] === 0xbf) return { encoding: 'UTF-8', skip: 3 };
-  if (head[0] === 0xff && head[1] === 0xfe) return { encoding: 'UTF-16LE', skip: 2 };
-  if (head[0] === 0xfe && head[1] === 0xff) return { encoding: 'UTF-16BE', skip: 2 };
-  const sample = head.subarray(0, 400);
-  const zeros = (odd: number): number => sample.filter((byte, i) => byte === 0 && i % 2 === odd).length;
-  if (zeros(1) > sample.length / 4) return { encoding: 'UTF-16LE', skip: 0 };
-  if (zeros(0) > sample.length / 4) return { encoding: 'UTF-16BE', skip: 0 };
-  try {
-    // The last characters of the head may be cut in two; three bytes of slack cover any UTF-8 character.
-    new TextDecoder('utf-8', { fatal: true }).decode(head.subarray(0, Math.max(0, head.length - 3)), { stream: true });
-    return { encoding: 'UTF-8', skip: 0 };
-  } catch {
-    return { encoding: 'Latin-1', skip: 0 };
-  }
-}
-
 const LABELS: Readonly<Record<Encoding, string>> = {
   'UTF-8': 'utf-8',
   'UTF-16LE': 'utf-16le',
@@ -27,29 +9,86 @@ const LABELS: Readonly<Record<Encoding, string>> = {
   'Latin-1': 'windows-1252',
 };
 
-/** A decoder of consecutive chunks. */
-export function decoderFor(encoding: Encoding): (chunk: Uint8Array, last: boolean) => string {
-  const decoder = new TextDecoder(LABELS[encoding]);
-  return (chunk, last) => decoder.decode(chunk, { stream: !last });
+/** First bytes of files that people hand over in place of text, and what to do about each. */
+const SIGNATURES: ReadonlyArray<readonly [string, readonly number[], string]> = [
+  ['a zipped workbook or archive', [0x50, 0x4b, 3, 4], 'open it and save the sheet as CSV'],
+  ['an old binary workbook', [0xd0, 0xcf, 0x11, 0xe0], 'open it and save the sheet as CSV'],
+  ['a PDF', [0x25, 0x50, 0x44, 0x46], 'export the numbers as CSV or JCAMP-DX, not the report'],
+  ['a picture (PNG)', [0x89, 0x50, 0x4e, 0x47], 'export the numbers as CSV or JCAMP-DX, not the picture'],
+  ['a gzip archive', [0x1f, 0x8b], 'unpack it first'],
+];
+
+/** Bytes enough to know what a file is. */
+const HEAD_BYTES = 65536;
+
+const startsWith = (bytes: Uint8Array, signature: readonly number[]): boolean =>
+  signature.every((byte, i) => bytes[i] === byte);
+
+/** Every other byte of UTF-16 is 0 as long as the text is mostly Latin letters and digits. */
+function unmarkedUtf16(bytes: Uint8Array): Encoding | null {
+  const units = Math.min(bytes.length, 4096) >> 1;
+  let low = 0;
+  let high = 0;
+  for (let i = 0; i < units; i++) {
+    if (bytes[2 * i] === 0) low++;
+    if (bytes[2 * i + 1] === 0) high++;
+  }
+  if (high > 0.4 * units && low === 0) return 'UTF-16LE';
+  return low > 0.4 * units && high === 0 ? 'UTF-16BE' : null;
 }
 
-/** @throws TankhueError `binary` where the text has control characters that no text has */
-export function refuseBinary(head: string, fileName: string): void {
-  // eslint-disable-next-line no-control-regex
-  const control = head.slice(0, 4000).match(/[\u0000-\u0008\u000e-\u001a\u001c-\u001f]/g)?.length ?? 0;
-  if (control > 2)
+/** No text has these: control characters other than tab, line ends, form feed, escape and the end-of-file mark of old systems. */
+const isControl = (byte: number): boolean => byte < 32 && ![9, 10, 12, 13, 26, 27].includes(byte);
+
+function isUtf8(head: Uint8Array): boolean {
+  try {
+    // As a stream, because the last character of the head may be cut in two.
+    new TextDecoder('utf-8', { fatal: true }).decode(head, { stream: true });
+    return true;
+  } catch {
+    return false;
+  }
+}
+
+/**
+ * The encoding of a text: its mark, else the zeros of UTF-16, else UTF-8 where the bytes are valid; what is left is Latin-1.
+ * @param bytes the beginning of the file, or all of it
+ * @throws TankhueError `file-empty`, `binary`
+ */
+export function encodingOf(bytes: Uint8Array, fileName: string): Encoding {
+  const head = bytes.subarray(0, HEAD_BYTES);
+  if (head.length === 0)
+    throw new TankhueError('file-empty', 'expected data; received an empty file', fileName, 'export the file again');
+  for (const [what, signature, hint] of SIGNATURES)
+    if (startsWith(head, signature))
+      throw new TankhueError('binary', `expected text; received ${what}`, fileName, hint);
+  if (startsWith(head, [0xff, 0xfe])) return 'UTF-16LE';
+  if (startsWith(head, [0xfe, 0xff])) return 'UTF-16BE';
+  const unmarked = unmarkedUtf16(head);
+  if (unmarked) return unmarked;
+  const control = head.findIndex(isControl);
+  if (control >= 0)
     throw new TankhueError(
       'binary',
-      `expected text; received a binary file (${control} control characters in its beginning)`,
+      `expected text; received byte 0x${head[control]!.toString(16).padStart(2, '0')} at offset ${control}`,
       fileName,
       'export the spectrum as text (CSV) or JCAMP-DX',
     );
+  return isUtf8(head) ? 'UTF-8' : 'Latin-1';
+}
+
+/**
+ * A whole text; a mark at its start is left out.
+ * @throws TankhueError `file-empty`, `binary`
+ */
+export function decodeText(bytes: Uint8Array, fileName: string): string {
+  return new TextDecoder(LABELS[encodingOf(bytes, fileName)]).decode(bytes);
 }
 
 /** Lines of text without their ends: LF, CRLF or CR, also mixed. */
-export function* linesOfChunks(chunks: Iterable<string>): Generator<string> {
+function* linesOf(texts: Iterable<string>): Generator<string> {
   let rest = '';
-  for (const chunk of chunks) {
+  for (const chunk of texts) {
     const text = rest + chunk;
     // A CR at the very end may be half of a CRLF.
     const end = text.endsWith('\r') ? text.length - 1 : text.length;
@@ -60,10 +99,24 @@ export function* linesOfChunks(chunks: Iterable<string>): Generator<string> {
   if (rest) yield rest.replace(/\r$/, '');
 }
 
-/** Lines of a whole file in memory. */
-export function* linesOfBytes(bytes: Uint8Array, fileName: string): Generator<string> {
-  const { encoding, skip } = encodingOf(bytes.subarray(0, 65536));
-  const text = decoderFor(encoding)(bytes.subarray(skip), true);
-  refuseBinary(text, fileName);
-  yield* linesOfChunks([text]);
+function* decoded(first: Uint8Array, others: Iterator<Uint8Array>, encoding: Encoding): Generator<string> {
+  const decoder = new TextDecoder(LABELS[encoding]);
+  yield decoder.decode(first, { stream: true });
+  for (let next = others.next(); !next.done; next = others.next()) yield decoder.decode(next.value, { stream: true });
+  yield decoder.decode();
+}
+
+/**
+ * Lines of a file that comes in pieces, decoded as they come.
+ * @throws TankhueError `file-empty`, `binary`
+ */
+export function linesOfChunks(
+  chunks: Iterable<Uint8Array>,
+  fileName: string,
+): { readonly encoding: Encoding; readonly lines: Iterable<string> } {
+  const iterator = chunks[Symbol.iterator]();
+  const first = iterator.next();
+  const head = first.done ? new Uint8Array() : first.value;
+  const encoding = encodingOf(head, fileName);
+  return { encoding, lines: linesOf(decoded(head, iterator, encoding)) };
 }

@@ -2,52 +2,27 @@ import { createHash, randomBytes } from 'node:crypto';
 import {
   closeSync,
   existsSync,
+  fsyncSync,
   openSync,
-  readSync,
   readdirSync,
   readFileSync,
+  readSync,
+  realpathSync,
   renameSync,
   rmSync,
   statSync,
-  writeSync,
-  fsyncSync,
+  writeFileSync,
 } from 'node:fs';
 import { basename, dirname, join, resolve } from 'node:path';
 import { TankhueError } from '../errors.ts';
-import { decoderFor, encodingOf, linesOfChunks, refuseBinary } from './decodeText.ts';
 import { nearest } from './nearest.ts';
-import { parseSpectraLines, type ReadOptions, type SpectraRead } from './spectra.ts';
+import type { ReadOptions } from './readOptions.ts';
+import { parseSpectraChunks, withHash } from './spectra.ts';
+import type { SpectraRead } from './understood.ts';
 
 /** The only file that touches the disk. */
 
 export const sha256Of = (data: Uint8Array | string): string => createHash('sha256').update(data).digest('hex');
-
-/** @throws TankhueError `file-missing`, `is-directory`, `file-empty` */
-function requireFile(path: string): void {
-  if (!existsSync(path))
-    throw new TankhueError('file-missing', `expected a file; received nothing of that name`, path, missingHint(path));
-  if (statSync(path).isDirectory())
-    throw new TankhueError('is-directory', 'expected a file; received a directory', path, 'name the file inside it');
-  if (statSync(path).size === 0)
-    throw new TankhueError('file-empty', 'expected data; received an empty file', path, 'export the file again');
-}
-
-/** @throws TankhueError `file-missing`, `is-directory`, `file-empty`, `file-unreadable` */
-export function readFileBytes(path: string): Uint8Array {
-  requireFile(path);
-  let bytes: Uint8Array;
-  try {
-    bytes = readFileSync(path);
-  } catch (error) {
-    throw new TankhueError(
-      'file-unreadable',
-      `expected a readable file; received ${(error as Error).message}`,
-      path,
-      'check its permissions',
-    );
-  }
-  return bytes;
-}
 
 function missingHint(path: string): string {
   const folder = dirname(path);
@@ -56,13 +31,76 @@ function missingHint(path: string): string {
   return near ? `did you mean ${join(folder, near)}?` : 'check the name and the folder';
 }
 
+/** @throws TankhueError `file-missing`, `is-directory`, `file-empty` */
+function requireFile(path: string): void {
+  const found = statSync(path, { throwIfNoEntry: false });
+  if (!found)
+    throw new TankhueError('file-missing', 'expected a file; received nothing of that name', path, missingHint(path));
+  if (found.isDirectory())
+    throw new TankhueError('is-directory', 'expected a file; received a directory', path, 'name the file inside it');
+  if (found.isFile() && found.size === 0)
+    throw new TankhueError('file-empty', 'expected data; received an empty file', path, 'export the file again');
+}
+
+/** @throws TankhueError `file-unreadable` */
+function openForReading(path: string): number {
+  try {
+    return openSync(path, 'r');
+  } catch (error) {
+    throw new TankhueError(
+      'file-unreadable',
+      `expected a readable file; received ${(error as NodeJS.ErrnoException).code ?? String(error)}`,
+      path,
+      'check who may read it, or copy it to a folder of yours',
+    );
+  }
+}
+
+/** @throws TankhueError `file-missing`, `is-directory`, `file-empty`, `file-unreadable` */
+export function readFileBytes(path: string): Uint8Array {
+  requireFile(path);
+  const file = openForReading(path);
+  try {
+    return readFileSync(file);
+  } finally {
+    closeSync(file);
+  }
+}
+
+const CHUNK_BYTES = 1 << 20;
+
+/**
+ * A file in pieces, from a byte offset to its present end, so that its size does not matter. A piece is good until the next is asked for.
+ * @throws TankhueError `file-missing`, `is-directory`, `file-empty`, `file-unreadable`
+ */
+export function* readChunks(path: string, start = 0, chunkBytes = CHUNK_BYTES): Generator<Uint8Array> {
+  requireFile(path);
+  const file = openForReading(path);
+  try {
+    const buffer = new Uint8Array(chunkBytes);
+    // Without a position the system keeps it, which a pipe needs.
+    let position = start === 0 ? null : start;
+    for (;;) {
+      const length = readSync(file, buffer, 0, chunkBytes, position);
+      if (length === 0) return;
+      if (position !== null) position += length;
+      yield buffer.subarray(0, length);
+    }
+  } finally {
+    closeSync(file);
+  }
+}
+
+/** Where a name leads in the end, links followed. */
+const destination = (path: string): string => (existsSync(path) ? realpathSync(path) : resolve(path));
+
 /**
  * Refuses an output that could not be written, before work is done for it.
  * @throws TankhueError `would-overwrite-input`, `folder-missing`, `is-directory`
  */
 export function requireWritable(path: string, inputs: readonly string[]): void {
-  const target = resolve(path);
-  if (inputs.some((input) => resolve(input) === target))
+  const target = destination(path);
+  if (inputs.some((input) => destination(input) === target))
     throw new TankhueError(
       'would-overwrite-input',
       'expected an output of another name than the inputs; received the same',
@@ -83,55 +121,36 @@ export function requireWritable(path: string, inputs: readonly string[]): void {
 /**
  * Writes a whole file or nothing: to a temporary name beside it, then renamed.
  * @param inputs files of this command, which are never overwritten
+ * @throws TankhueError `would-overwrite-input`, `folder-missing`, `is-directory`, `file-unwritable`
  */
 export function writeWhole(path: string, content: string | Uint8Array, inputs: readonly string[] = []): void {
   requireWritable(path, inputs);
-  const target = resolve(path);
+  const target = destination(path);
   const temporary = `${target}.${randomBytes(4).toString('hex')}.part`;
-  const file = openSync(temporary, 'wx');
   try {
-    writeSync(file, typeof content === 'string' ? Buffer.from(content) : content);
-    fsyncSync(file);
+    const file = openSync(temporary, 'wx');
+    try {
+      writeFileSync(file, content);
+      fsyncSync(file);
+    } finally {
+      closeSync(file);
+    }
+    renameSync(temporary, target);
   } catch (error) {
     rmSync(temporary, { force: true });
-    throw error;
-  } finally {
-    closeSync(file);
-  }
-  renameSync(temporary, target);
-}
-
-const CHUNK = 1 << 20;
-
-/** Text of a file in chunks, so that its size does not matter; every chunk is shown to `onBytes` as read. */
-function* textChunks(path: string, onBytes: (bytes: Uint8Array) => void): Generator<string> {
-  requireFile(path);
-  const file = openSync(path, 'r');
-  try {
-    const buffer = Buffer.allocUnsafe(CHUNK);
-    let decode: ReturnType<typeof decoderFor> | null = null;
-    for (let length = readSync(file, buffer); length > 0; length = readSync(file, buffer)) {
-      let bytes: Uint8Array = buffer.subarray(0, length);
-      onBytes(bytes);
-      const first = decode === null;
-      if (decode === null) {
-        const { encoding, skip } = encodingOf(bytes.subarray(0, 65536));
-        decode = decoderFor(encoding);
-        bytes = bytes.subarray(skip);
-      }
-      const text = decode(bytes, false);
-      if (first) refuseBinary(text, path);
-      yield text;
-    }
-    if (decode) yield decode(new Uint8Array(), true);
-  } finally {
-    closeSync(file);
+    throw new TankhueError(
+      'file-unwritable',
+      `expected a place that can be written; received ${(error as NodeJS.ErrnoException).code ?? String(error)}`,
+      path,
+      'check the free space and who may write there; nothing was changed',
+    );
   }
 }
 
 /**
- * Spectra of a file on disk, read in chunks. The hash is that of the whole file.
+ * Spectra of a file on disk, read in pieces. The hash is that of the whole file.
  * @param shownAs the name used in messages and records
+ * @throws TankhueError, TankhueErrors as `readChunks` and `parseSpectraChunks`
  */
 export function readSpectraFile(
   path: string,
@@ -139,7 +158,13 @@ export function readSpectraFile(
   shownAs = path,
 ): SpectraRead & { readonly sha256: string } {
   const hash = createHash('sha256');
-  const read = parseSpectraLines(linesOfChunks(textChunks(path, (bytes) => hash.update(bytes))), shownAs, '', options);
+  const hashed = function* (): Generator<Uint8Array> {
+    for (const chunk of readChunks(path)) {
+      hash.update(chunk);
+      yield chunk;
+    }
+  };
+  const read = parseSpectraChunks(hashed(), shownAs, options);
   const sha256 = hash.digest('hex');
-  return { ...read, spectra: read.spectra.map((one) => ({ ...one, origin: { ...one.origin, sha256 } })), sha256 };
+  return { ...withHash(read, sha256), sha256 };
 }

@@ -64,7 +64,8 @@ export interface SheetOf<Row> {
 
 export function readSamplesSheet(bytes: Uint8Array, fileName: string): SheetOf<SamplesRow> {
   const sheet = readSheet(bytes, fileName, SAMPLES_COLUMNS, ['sample', 'side', 'file']);
-  return readRows(sheet, (read, row) => samplesRow(read, row, fileName));
+  const names = new Set<string>();
+  return readRows(sheet, (read, row) => samplesRow(read, row, fileName, names));
 }
 
 /** Shared with the tanks sheet: every row through `make`, its problems kept apart. */
@@ -80,7 +81,8 @@ export function readRows<Row>(sheet: Sheet, make: (read: RowReader, row: SheetRo
   return { rows, problems, unknownColumns: sheet.unknownColumns };
 }
 
-export function samplesRow(read: RowReader, row: SheetRow, fileName: string): SamplesRow | null {
+/** @param names of the rows before this one; its own is added */
+export function samplesRow(read: RowReader, row: SheetRow, fileName: string, names: Set<string>): SamplesRow | null {
   const name = read.text('sample');
   const file = read.text('file');
   const sideText = read.text('side');
@@ -91,6 +93,14 @@ export function samplesRow(read: RowReader, row: SheetRow, fileName: string): Sa
       'expected a name for the sample; received an empty cell',
       'write the plant, the side and the date',
     );
+  else if (names.has(name))
+    read.refuse(
+      'name-repeats',
+      'sample',
+      `expected every sample to have a name of its own; received "${name}" twice`,
+      'add the date or a number; say in replicate_of which sample it repeats',
+    );
+  else names.add(name);
   if (file === null)
     read.refuse(
       'file-missing',

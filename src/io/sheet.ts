@@ -1,7 +1,8 @@
 import Papa from 'papaparse';
 import { TankhueError, TankhueErrors, quoted } from '../errors.ts';
-import { decoderFor, encodingOf, refuseBinary } from './decodeText.ts';
-import { nearest } from './nearest.ts';
+import { decodeText } from './decodeText.ts';
+import { listed, nearest } from './nearest.ts';
+import { groupsThousands, isDecimalComma, numberFromText } from './numberText.ts';
 
 /** One row of a sheet: texts by column, and where each stands, for messages. */
 export interface SheetRow {
@@ -16,14 +17,39 @@ export interface Sheet {
   readonly columns: readonly string[];
   /** columns nobody asked for: kept and reported */
   readonly unknownColumns: readonly string[];
-  /** comma sheets write 0.5, semicolon sheets may write 0,5 */
+  /** some number has a comma that can only be a decimal mark, and none has a point */
   readonly decimalComma: boolean;
 }
 
+// papaparse takes the quotes apart and nothing else. Its traps: it guesses separators, knows no decimal comma, mis-splits CRLF mixed with
+// CR, loses a header `__proto__`, and tells of open quotes only on the side; so all of that is decided here.
+function cellsOf(text: string, delimiter: string, fileName: string): ParsedLine[] {
+  const { data, errors } = Papa.parse<string[]>(text, { delimiter, newline: '\n', skipEmptyLines: false });
+  const lineOf = lineNumbers(data);
+  const open = errors.find((error) => error.type === 'Quotes');
+  if (open)
+    throw new TankhueError(
+      'quote-open',
+      'expected each quote to be closed before the next separator; received one that is not',
+      `${fileName}:${lineOf(open.row ?? 0)}:1`,
+      'close the quotation mark, or write "" for a mark inside',
+    );
+  return data
+    .map((cells, row) => ({ line: lineOf(row), cells: cells.map((cell) => cell.trim()) }))
+    .filter(({ cells }) => cells.some((cell) => cell !== ''));
+}
+
+interface ParsedLine {
+  readonly line: number;
+  readonly cells: string[];
+}
+
 /**
- * Reads a sheet whose header names are fixed and whose column order is free.
- * @param known all columns that mean something, @param needed those without which nothing can be done
- * @throws TankhueError(s) `file-empty`, `column-missing`, `column-repeats`, `column-unit`, `quote-open`, `row-ragged`
+ * Reads a sheet whose header names are fixed and whose column order is free. Separators are commas, semicolons or tabs.
+ * @param known all columns that mean something
+ * @param needed those without which nothing can be done
+ * @throws TankhueErrors `file-empty`, `header-missing`, `column-missing`, `column-repeats`, `column-name`, `column-unit`, `quote-open`,
+ *   `row-ragged`, `no-rows`
  */
 export function readSheet(
   bytes: Uint8Array,
@@ -31,78 +57,73 @@ export function readSheet(
   known: readonly string[],
   needed: readonly string[],
 ): Sheet {
-  if (bytes.length === 0)
-    throw new TankhueError(
-      'file-empty',
-      'expected a sheet; received an empty file',
-      fileName,
-      'fill in a header line and a row for each cuvette',
-    );
-  const { encoding, skip } = encodingOf(bytes.subarray(0, 65536));
-  const text = decoderFor(encoding)(bytes.subarray(skip), true).replace(/\r\n?/g, '\n');
-  refuseBinary(text, fileName);
-  const delimiter = separatorOf(text);
-  const { data, errors } = Papa.parse<string[]>(text, { delimiter, skipEmptyLines: false });
-  const open = errors.find((error) => error.type === 'Quotes');
-  if (open)
-    throw new TankhueError(
-      'quote-open',
-      'expected a quote at the end of a quoted cell; received none',
-      `${fileName}:${(open.row ?? 0) + 1}`,
-      'close the quotation mark, or write "" for a mark inside',
-    );
-  const headerIndex = data.findIndex((row) => row.some((cell) => cell.trim() !== ''));
-  if (headerIndex < 0)
-    throw new TankhueError(
-      'file-empty',
-      'expected a header line; received blank lines',
-      fileName,
-      'fill in a header line and a row for each cuvette',
-    );
-  const columns = data[headerIndex]!.map((cell) => cell.trim());
-  const lineOf = lineNumbers(data);
-  requireColumns(columns, known, needed, `${fileName}:${lineOf(headerIndex)}`);
-  const rows: SheetRow[] = [];
-  const problems: TankhueError[] = [];
-  data.slice(headerIndex + 1).forEach((cells, offset) => {
-    if (cells.every((cell) => cell.trim() === '')) return;
-    const line = lineOf(headerIndex + 1 + offset);
-    if (cells.length > columns.length && cells.slice(columns.length).some((cell) => cell.trim() !== ''))
-      problems.push(
-        new TankhueError(
-          'row-ragged',
-          `expected ${columns.length} cells; received ${cells.length}`,
-          `${fileName}:${line}`,
-          `is there a ${delimiter === ',' ? 'decimal comma or an unquoted comma' : 'stray separator'} in the row?`,
-        ),
-      );
-    rows.push({
-      line,
-      cells: new Map(columns.map((column, j) => [column, (cells[j] ?? '').trim()])),
-      where: (column) => `${fileName}:${line}:${columns.indexOf(column) + 1}`,
-    });
-  });
-  if (problems.length > 0) throw new TankhueErrors(problems as [TankhueError, ...TankhueError[]]);
-  if (rows.length === 0)
+  const text = decodeText(bytes, fileName).replace(/\r\n?/g, '\n');
+  const delimiter = separatorOf(text, known, fileName);
+  const [header, ...lines] = cellsOf(text, delimiter, fileName);
+  const columns = header!.cells;
+  while (columns.at(-1) === '') columns.pop();
+  requireColumns(columns, known, needed, `${fileName}:${header!.line}`);
+  requireFullRows(lines, columns.length, delimiter, fileName);
+  if (lines.length === 0)
     throw new TankhueError(
       'no-rows',
       'expected a row for each cuvette; received only the header',
-      `${fileName}:${lineOf(headerIndex)}`,
+      `${fileName}:${header!.line}:1`,
       'fill in a row for each cuvette',
     );
+  const cells = lines.flatMap((line) => line.cells);
   return {
-    rows,
+    rows: lines.map(({ line, cells }) => ({
+      line,
+      cells: new Map(columns.map((column, j) => [column, cells[j]!])),
+      where: (column) => `${fileName}:${line}:${columns.indexOf(column) + 1}`,
+    })),
     columns,
     unknownColumns: columns.filter((column) => column !== '' && !known.includes(column)),
-    decimalComma: delimiter !== ',',
+    decimalComma: cells.some(isDecimalComma) && !cells.some((cell) => /^[+-]?\d*\.\d+$/.test(cell)),
   };
 }
 
-/** The separator that the first line has most of. */
-function separatorOf(text: string): string {
+/** Every row as long as the header, empty cells at its end aside: a missing or stray separator would move values to other columns. */
+function requireFullRows(lines: readonly ParsedLine[], width: number, delimiter: string, fileName: string): void {
+  const problems: TankhueError[] = [];
+  for (const { line, cells } of lines) {
+    while (cells.length > width && cells.at(-1) === '') cells.pop();
+    if (cells.length === width) continue;
+    problems.push(
+      new TankhueError(
+        'row-ragged',
+        `expected ${width} cells as in the header; received ${cells.length}`,
+        `${fileName}:${line}:1`,
+        `is there a ${delimiter === ',' ? 'decimal comma or an unquoted comma' : 'stray or missing separator'} in the row?`,
+      ),
+    );
+  }
+  throwAny(problems);
+}
+
+function throwAny(problems: readonly TankhueError[]): void {
+  const [first, ...others] = problems;
+  if (first) throw new TankhueErrors([first, ...others]);
+}
+
+/** The separator that takes the most known names out of the first line. */
+function separatorOf(text: string, known: readonly string[], fileName: string): string {
   const header = text.split('\n').find((line) => line.trim() !== '') ?? '';
-  const counts = [',', ';', '\t'].map((separator) => ({ separator, count: header.split(separator).length }));
-  return counts.sort((a, b) => b.count - a.count)[0]!.separator;
+  const names = (separator: string): number =>
+    header.split(separator).filter((cell) => known.includes(cell.replace(/"/g, '').trim())).length;
+  const best = [',', ';', '\t']
+    .map((separator) => ({ separator, count: names(separator) }))
+    .reduce((a, b) => (b.count > a.count ? b : a));
+  if (best.count > 0) return best.separator;
+  throw new TankhueErrors([
+    new TankhueError(
+      'header-missing',
+      `expected a first line with column names such as ${known.slice(0, 5).join(', ')}; received ${quoted(header.trim())}`,
+      `${fileName}:1:1`,
+      'write the names in the first line, between commas, semicolons or tabs',
+    ),
+  ]);
 }
 
 /** Line of each parsed row, counting line breaks inside quoted cells. */
@@ -116,7 +137,7 @@ function lineNumbers(data: readonly string[][]): (row: number) => number {
   return (row) => starts[row] ?? line;
 }
 
-const UNIT_SUFFIX = /_(mm|cm|m|um|nm|L|mL|m3|C|K|F|mol_L|mM|V|mV)$/;
+const UNIT_SUFFIX = /_(mm|cm|m|um|nm|L|mL|m3|C|K|F|mol_L|mmol_L|g_L|mg_L|M|mM|V|mV|mol|Ah)$/;
 
 function requireColumns(
   columns: readonly string[],
@@ -136,10 +157,20 @@ function requireColumns(
         ),
       );
     if (known.includes(column)) return;
+    const otherCase = known.find((name) => name.toLowerCase() === column.toLowerCase());
+    if (otherCase)
+      problems.push(
+        new TankhueError(
+          'column-name',
+          `expected the column ${otherCase}; received "${column}"`,
+          `${where}:${j + 1}`,
+          `write ${otherCase}: names are fixed, so that none is overlooked`,
+        ),
+      );
     const stem = column.replace(UNIT_SUFFIX, '');
     const twin =
       stem === column ? undefined : known.find((name) => name !== column && name.replace(UNIT_SUFFIX, '') === stem);
-    if (twin)
+    if (twin && !otherCase)
       problems.push(
         new TankhueError(
           'column-unit',
@@ -158,13 +189,13 @@ function requireColumns(
       problems.push(
         new TankhueError(
           'column-missing',
-          `expected the column ${column}; received ${columns.filter(Boolean).join(', ')}`,
+          `expected the column ${column}; received ${listed(columns.filter(Boolean))}`,
           where,
           near ? `did you mean it by "${near}"? rename it` : 'add the column; an empty cell means unknown',
         ),
       );
     }
-  if (problems.length > 0) throw new TankhueErrors(problems as [TankhueError, ...TankhueError[]]);
+  throwAny(problems);
 }
 
 /** Reads typed cells of one row and keeps every problem, so that all of a row are shown at once. */
@@ -196,8 +227,17 @@ export class RowReader {
   number(column: string, isAllowed: (value: number) => boolean = () => true, expected = 'a number'): number | null {
     const text = this.text(column);
     if (text === null) return null;
-    const plain = this.decimalComma ? text.replace(',', '.') : text;
-    const value = /^[+-]?(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d+)?$/.test(plain) ? Number(plain) : NaN;
+    if (this.isUnclear(text)) {
+      const comma = text.includes(',');
+      this.refuse(
+        'decimal-mark',
+        column,
+        `expected a ${comma ? 'comma' : 'point'} in ${column} that cannot be a thousands mark; received ${quoted(text)}`,
+        `write ${text.replace(/[.,]/g, '')} or ${comma ? text.replace(',', '.') : text.replace('.', ',')}, whichever is meant`,
+      );
+      return null;
+    }
+    const value = numberFromText(text, text.includes(',') ? 'comma' : 'point');
     if (Number.isFinite(value) && isAllowed(value)) return value;
     this.refuse(
       'out-of-range',
@@ -206,6 +246,11 @@ export class RowReader {
       'write a plain number in the unit of the column, or leave the cell empty for unknown',
     );
     return null;
+  }
+
+  /** 1,234 where no other cell shows what a comma means; 1.234 among decimal commas. */
+  private isUnclear(text: string): boolean {
+    return groupsThousands(text) && text.includes('.') === this.decimalComma;
   }
 
   /** A point in time, ms since 1970; null where empty. ISO 8601, with or without zone (then local to the sheet, read as UTC). */

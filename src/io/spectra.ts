@@ -1,45 +1,58 @@
 import { TankhueError } from '../errors.ts';
 import type { Spectrum } from '../spectrum/spectrum.ts';
-import { linesOfBytes } from './decodeText.ts';
-import { parseDelimited, type ReadOptions, type SpectraRead, type Understood } from './delimited.ts';
+import { linesOfChunks } from './decodeText.ts';
+import { parseDelimited } from './delimited.ts';
 import { looksLikeJcamp, parseJcamp } from './jcamp.ts';
-import { nearest } from './nearest.ts';
+import { listed, nearest } from './nearest.ts';
+import type { ReadOptions } from './readOptions.ts';
+import type { SpectraRead } from './understood.ts';
 
-export type { ReadOptions, SpectraRead, Understood } from './delimited.ts';
+function* following(head: readonly string[], rest: Iterator<string>): Generator<string> {
+  yield* head;
+  for (let next = rest.next(); !next.done; next = rest.next()) yield next.value;
+}
 
-/** Spectra from lines of text of any origin: delimited numbers or JCAMP-DX. */
-export function parseSpectraLines(
-  lines: Iterable<string>,
+/**
+ * Spectra of a file that comes in pieces: delimited numbers or JCAMP-DX, told apart by the first line that is not blank.
+ * @param fileName as used in messages and in each spectrum's origin, whose hash stays empty
+ * @param options what the person says where the file does not
+ * @throws TankhueError, TankhueErrors when the file cannot be read, or can be read in two ways
+ */
+export function parseSpectraChunks(
+  chunks: Iterable<Uint8Array>,
   fileName: string,
-  sha256: string,
   options: ReadOptions = {},
 ): SpectraRead {
+  const { encoding, lines } = linesOfChunks(chunks, fileName);
   const iterator = lines[Symbol.iterator]();
   const head: string[] = [];
   for (let next = iterator.next(); !next.done; next = iterator.next()) {
     head.push(next.value);
-    if (next.value.trim() !== '') break;
+    if (next.value.trim() !== '' && !next.value.trim().startsWith('$$')) break;
   }
-  const all = (function* () {
-    yield* head;
-    for (let next = iterator.next(); !next.done; next = iterator.next()) yield next.value;
-  })();
+  const all = following(head, iterator);
   return looksLikeJcamp(head.at(-1) ?? '')
-    ? parseJcamp(all, fileName, sha256, options)
-    : parseDelimited(all, fileName, sha256, options);
+    ? parseJcamp(all, fileName, encoding, options)
+    : parseDelimited(all, fileName, encoding, options);
 }
 
-/** Spectra from a whole file in memory. @throws TankhueError `file-empty`, `binary` and those of the formats */
-export function parseSpectra(
+/** The same spectra with the hash of their file in each origin. */
+export const withHash = (read: SpectraRead, sha256: string): SpectraRead => ({
+  ...read,
+  spectra: read.spectra.map((spectrum) => ({ ...spectrum, origin: { ...spectrum.origin, sha256 } })),
+});
+
+/**
+ * Spectra of a whole file in memory.
+ * @param sha256 of the bytes; empty where nobody needs it
+ * @throws TankhueError, TankhueErrors as `parseSpectraChunks`
+ */
+export const parseSpectra = (
   bytes: Uint8Array,
   fileName: string,
   sha256: string,
   options: ReadOptions = {},
-): SpectraRead {
-  if (bytes.length === 0)
-    throw new TankhueError('file-empty', 'expected data; received an empty file', fileName, 'export the file again');
-  return parseSpectraLines(linesOfBytes(bytes, fileName), fileName, sha256, options);
-}
+): SpectraRead => withHash(parseSpectraChunks([bytes], fileName, options), sha256);
 
 /**
  * The spectrum of a column name; without a name the only one there is.
@@ -47,14 +60,13 @@ export function parseSpectra(
  */
 export function findColumn(spectra: readonly Spectrum[], name: string | null, where: string): Spectrum {
   const names = spectra.map((spectrum) => spectrum.name);
-  const shown = names.slice(0, 10).join(', ') + (names.length > 10 ? `, … (${names.length} in all)` : '');
   if (name === null || name === '') {
     if (spectra.length === 1) return spectra[0]!;
     throw new TankhueError(
       'column-unclear',
       `expected the name of one of ${names.length} columns; received none`,
       where,
-      `say which: ${shown}`,
+      `say which: ${listed(names)}`,
     );
   }
   const found = spectra.filter((spectrum) => spectrum.name.trim() === name.trim());
@@ -69,16 +81,8 @@ export function findColumn(spectra: readonly Spectrum[], name: string | null, wh
   const near = nearest(name, names);
   throw new TankhueError(
     'column-unknown',
-    `expected one of the columns ${shown}; received "${name}"`,
+    `expected one of the columns ${listed(names)}; received "${name}"`,
     where,
     near ? `did you mean "${near}"?` : 'copy the name from the header of the file',
   );
 }
-
-/** What was understood, for a person. */
-export const understoodText = (fileName: string, u: Understood): string =>
-  `${fileName}: ${u.format}, ${u.layout}, ${u.columns.length} spectra of ${u.points} points, ${u.range[0].toFixed(1)} to ${u.range[1].toFixed(1)} nm every ${u.step.toFixed(2)} nm, ${u.direction}, read as ${u.units.join(' and ')}` +
-  (u.format === 'JCAMP-DX'
-    ? ''
-    : `, separated by ${u.separator}, decimal ${u.decimal}, ${u.headerLines} header and ${u.footerLines} footer lines`) +
-  (u.withoutValue > 0 ? `, ${u.withoutValue} readings without a value` : '');

@@ -45,8 +45,9 @@ export interface TanksRow extends SamplesRow {
 
 export function readTanksSheet(bytes: Uint8Array, fileName: string): SheetOf<TanksRow> {
   const sheet = readSheet(bytes, fileName, TANKS_COLUMNS, ['sample', 'side', 'file', 'volume_L']);
+  const names = new Set<string>();
   return readRows(sheet, (read, row): TanksRow | null => {
-    const sample = samplesRow(read, row, fileName);
+    const sample = samplesRow(read, row, fileName, names);
     const positive = (column: string, unit: string): number | null =>
       read.number(column, (value) => value > 0, `more than 0 ${unit}`);
     const volume = positive('volume_L', 'L');
