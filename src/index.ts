@@ -25,6 +25,13 @@ export { readTanksSheet, type TanksRow } from './io/tanksSheet.ts';
 export { assayText } from './report/assayText.ts';
 export { assayCsv } from './report/assayCsv.ts';
 export { calibrationText } from './report/calibrationText.ts';
+export {
+  prepare,
+  type ManyOptions,
+  type ManyResults,
+  type PairsOnGrid,
+  type PreparedMany,
+} from './estimation/solveMany.ts';
 export { seededRandom, type Random } from './numerics/random.ts';
 export { simulateSpectrum, type SimulatedNoise, type SimulationRequest } from './estimation/simulate.ts';
 export { NO_FAULTS, type SimulatedFaults } from './estimation/simulateFaults.ts';

@@ -60,10 +60,10 @@ export function reduce(prepared: Prepared, absorbance: Float64Array): Reduced {
   return { z, residual: Math.max(0, norm / (whitening.noise * whitening.noise) - dot(z, z)) };
 }
 
-const TIGHTEST = 1e-9;
+export const TIGHTEST = 1e-9;
 const MOST_STEPS = 60;
-const SHARES = [0.02, 0.15, 0.35, 0.5, 0.65, 0.85, 0.98];
-const TOTALS = [0.003, 0.01, 0.03, 0.08, 0.2, 0.45, 0.8, 1.2, 1.7, 2.4];
+export const SHARES = [0.02, 0.15, 0.35, 0.5, 0.65, 0.85, 0.98];
+export const TOTALS = [0.003, 0.01, 0.03, 0.08, 0.2, 0.45, 0.8, 1.2, 1.7, 2.4];
 
 class Problem {
   private readonly amounts: AbsorbingAmounts;
