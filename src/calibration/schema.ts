@@ -67,6 +67,7 @@ const pairCalibration = v.strictObject({
       noise: positive,
       modeCount: nonNegative,
       rmse: nonNegative,
+      surprise: finite,
     }),
   ),
   limits: v.array(
