@@ -9,7 +9,7 @@ import {
 } from '../bench/instrument/scans.ts';
 import { quoted, TankhueError, TankhueErrors } from '../errors.ts';
 import type { Spectrum } from '../spectrum/spectrum.ts';
-import { centimetresFromMillimetres } from '../units.ts';
+import { centimetresFromMillimetres, kelvinFromCelsius } from '../units.ts';
 import { nearest } from './nearest.ts';
 import { readRows } from './samplesSheet.ts';
 import { readSheet, type RowReader, type Sheet } from './sheet.ts';
@@ -35,6 +35,8 @@ export const VERIFICATION_COLUMNS = [
   'reference_column',
   'reference_path_mm',
   'reference_path_u_mm',
+  'temperature_C',
+  'certificate_temperature_C',
   'note',
 ] as const;
 
@@ -91,8 +93,16 @@ function scanOfTest(
 ): InstrumentScan | null {
   const scan = MAKERS[test](read, fetch, assumed);
   return scan && read.problems.length === 0
-    ? ({ ...scan, test, spectrum: fetch(file, 'column') } as InstrumentScan)
+    ? ({ ...scan, ...temperaturesOf(read), test, spectrum: fetch(file, 'column') } as InstrumentScan)
     : null;
+}
+
+function temperaturesOf(read: RowReader): Pick<InstrumentScan, 'temperatures'> {
+  const celsius = (column: string) => read.number(column, (t) => t > -20 && t < 100, '-20 to 100 °C');
+  const scanned = celsius('temperature_C');
+  const certified = celsius('certificate_temperature_C');
+  if (scanned === null || certified === null) return {};
+  return { temperatures: { scanned: kelvinFromCelsius(scanned), certified: kelvinFromCelsius(certified) } };
 }
 
 function testOf(read: RowReader): InstrumentTestName | null {

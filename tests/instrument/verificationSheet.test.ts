@@ -1,5 +1,6 @@
 import { describe, expect, test } from 'vitest';
 import { TankhueErrors, type TankhueError } from '../../src/errors.ts';
+import { verifyInstrument } from '../../src/bench/instrument/verifyInstrument.ts';
 import { readVerificationSheet } from '../../src/io/verificationSheet.ts';
 import { scan } from './simulated.ts';
 
@@ -50,6 +51,14 @@ describe('a sheet of scans', () => {
     });
     expect(scans[5]).toMatchObject({ minutes: 15 });
     expect(assumed).toEqual([]);
+  });
+
+  test('a certificate of another temperature is said, not corrected', () => {
+    const sheet = (celsius: number) =>
+      read(`test,file,temperature_C,certificate_temperature_C\nblank,b.csv,${celsius},25\n`).scans;
+    const codes = (celsius: number) => verifyInstrument(sheet(celsius)).findings.map(({ code }) => code);
+    expect(codes(18)).toContain('temperature-off');
+    expect(codes(24)).not.toContain('temperature-off');
   });
 
   test('what the sheet leaves open is said', () => {

@@ -1,6 +1,7 @@
 import { existsSync, readFileSync } from 'node:fs';
 import { array, assert, integer, pre, property } from 'fast-check';
 import { describe, expect, test } from 'vitest';
+import { PIGMENT_PASTES } from '../support/pigmentPastes.ts';
 import { nestedAnova } from '../../src/numerics/nestedAnova.ts';
 
 const REFERENCES = '../shared/references/strd';
@@ -31,29 +32,10 @@ describe.skipIf(!existsSync(REFERENCES))('one-way analysis against NIST StRD (sk
   });
 });
 
-// G. E. P. Box, W. G. Hunter, J. S. Hunter, Statistics for Experimenters, moisture of pigment pastes: 15 batches, 2 samples each,
-// 2 tests each (data from memory, which the published table confirms). Published: mean squares 86.495 (14 df), 57.983 (15 df),
-// 0.917 (30 df); components 7.1, 28.5, 0.92.
+// Published for the pigment pastes: mean squares 86.495 (14 df), 57.983 (15 df), 0.917 (30 df); components 7.1, 28.5, 0.92.
 test('three levels: pigment pastes', () => {
-  const batches = [
-    [40, 39, 30, 30],
-    [26, 28, 25, 26],
-    [29, 28, 14, 15],
-    [30, 31, 24, 24],
-    [19, 20, 17, 17],
-    [33, 32, 26, 24],
-    [23, 24, 32, 33],
-    [34, 34, 29, 29],
-    [27, 27, 31, 31],
-    [13, 16, 27, 24],
-    [25, 23, 25, 27],
-    [29, 29, 31, 32],
-    [19, 20, 29, 30],
-    [23, 24, 25, 25],
-    [39, 37, 26, 28],
-  ];
-  const groups = batches.flatMap((_, b) => [0, 0, 1, 1].map((s) => ['all', String(b), String(s)]));
-  const [batch, sample, repeat] = nestedAnova(groups, batches.flat());
+  const groups = PIGMENT_PASTES.flatMap((_, b) => [0, 0, 1, 1].map((s) => ['all', String(b), String(s)]));
+  const [batch, sample, repeat] = nestedAnova(groups, PIGMENT_PASTES.flat());
   expect([batch, sample, repeat].map((level) => level!.degreesOfFreedom)).toEqual([14, 15, 30]);
   expect(batch!.meanSquare).toBeCloseTo(86.495, 3);
   expect(sample!.meanSquare).toBeCloseTo(57.983, 3);

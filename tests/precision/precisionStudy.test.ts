@@ -3,6 +3,8 @@ import { uncertaintyFromPrecision } from '../../src/assay/precisionRecord.ts';
 import { grubbsLimit } from '../../src/bench/grubbs.ts';
 import { cochranLimit, precisionStudy, type ReplicateSheet } from '../../src/bench/precision/precisionStudy.ts';
 
+import { PIGMENT_PASTES } from '../support/pigmentPastes.ts';
+
 const origin = { file: 'replicates.csv', column: '', sha256: '' };
 
 // ISO 5725-2, table of Cochran's critical values (from memory): groups, results a group, 5 %, 1 %. The printed table is rounded
@@ -28,27 +30,10 @@ test.each([
 
 // The pigment pastes of Box, Hunter and Hunter (see the test of the analysis itself) as one sample assayed by 15 "days" of two
 // "fillings": components 7.1, 28.5, 0.92, so repeatability is √0.92 and reproducibility √36.6.
-const pastes = [
-  [40, 39, 30, 30],
-  [26, 28, 25, 26],
-  [29, 28, 14, 15],
-  [30, 31, 24, 24],
-  [19, 20, 17, 17],
-  [33, 32, 26, 24],
-  [23, 24, 32, 33],
-  [34, 34, 29, 29],
-  [27, 27, 31, 31],
-  [13, 16, 27, 24],
-  [25, 23, 25, 27],
-  [29, 29, 31, 32],
-  [19, 20, 29, 30],
-  [23, 24, 25, 25],
-  [39, 37, 26, 28],
-];
 const pasteSheet: ReplicateSheet = {
   factors: ['day', 'filling'],
   origin,
-  lines: pastes.flatMap((values, day) =>
+  lines: PIGMENT_PASTES.flatMap((values, day) =>
     values.map((value, i) => ({
       sample: 'paste',
       labels: [`${day}`, `${i < 2 ? 1 : 2}`],
@@ -73,7 +58,7 @@ test('a sheet of replicates: components, repeatability, reproducibility', () => 
 
 test('total vanadium is relative: the same data in another unit give the same figures', () => {
   const total = precisionStudy(pasteSheet).quantities.totalVanadium!;
-  const mean = pastes.flat().reduce((a, b) => a + b, 0) / 60;
+  const mean = PIGMENT_PASTES.flat().reduce((a, b) => a + b, 0) / 60;
   expect(total.unit).toBe('relative');
   expect(total.components[1]!.standardDeviation).toBeCloseTo(Math.sqrt(28.533) / mean, 4);
 });

@@ -10,6 +10,7 @@
 import type { Finding } from '../../finding.ts';
 import { TankhueError } from '../../errors.ts';
 import { chiSquareQuantile, normalCdf, studentQuantile } from '../../numerics/distributions.ts';
+import { mean, sumOfSquares } from '../../numerics/meanAndDeviation.ts';
 import { grubbsLimit } from '../grubbs.ts';
 import type { CheckLog, CheckPoint } from './checkLog.ts';
 
@@ -49,7 +50,7 @@ export function baselineOf(log: CheckLog, count: number = DEFAULT_BASELINE_COUNT
     else groups.set(group, [i]);
   }
   const means = new Map(
-    [...groups].map(([group, members]) => [group, meanOf(members.map((i) => aboveAssigned(log.points[i]!)))]),
+    [...groups].map(([group, members]) => [group, mean(members.map((i) => aboveAssigned(log.points[i]!)))]),
   );
   const residuals = chosen.map((i) => aboveAssigned(log.points[i]!) - means.get(centreGroup(log.points[i]!))!);
   const degreesOfFreedom = chosen.length - groups.size;
@@ -63,8 +64,8 @@ export function baselineOf(log: CheckLog, count: number = DEFAULT_BASELINE_COUNT
     );
   const centres = new Map<string, number>();
   for (const point of log.points) {
-    const mean = means.get(centreGroup(point));
-    if (mean !== undefined) centres.set(point.lot, mean + (Number.isNaN(point.assigned) ? 0 : point.assigned));
+    const centre = means.get(centreGroup(point));
+    if (centre !== undefined) centres.set(point.lot, centre + (Number.isNaN(point.assigned) ? 0 : point.assigned));
   }
   const assigned = groups.get(SHARED_BIAS);
   const bias = assigned
@@ -158,6 +159,3 @@ function doubtsAbout(
     );
   return findings;
 }
-
-const meanOf = (values: readonly number[]): number => values.reduce((sum, value) => sum + value, 0) / values.length;
-const sumOfSquares = (values: readonly number[]): number => values.reduce((sum, value) => sum + value * value, 0);

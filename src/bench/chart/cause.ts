@@ -7,6 +7,7 @@
 // Units       z has none; modes are in units of their own.
 // Source      ours; the likely causes are those of common practice.
 import { normalQuantile } from '../../numerics/distributions.ts';
+import { mean, standardDeviation } from '../../numerics/meanAndDeviation.ts';
 import type { CheckPoint } from './checkLog.ts';
 
 /** By the names an assay gives its fitted effects. */
@@ -46,7 +47,7 @@ export function movedModes(
       const during = valuesOf(alarm, mode);
       if (before.length < 5 || during.length === 0) return [];
       const centre = mean(before);
-      const spread = Math.sqrt(before.reduce((sum, v) => sum + (v - centre) ** 2, 0) / (before.length - 1));
+      const spread = standardDeviation(before);
       if (spread === 0) return [];
       const change = mean(during) - centre;
       const z = change / (spread * Math.sqrt(1 / during.length + 1 / before.length));
@@ -57,5 +58,3 @@ export function movedModes(
 
 const valuesOf = (points: readonly CheckPoint[], mode: string): number[] =>
   points.map((point) => point.modes[mode] ?? NaN).filter((value) => !Number.isNaN(value));
-
-const mean = (values: readonly number[]): number => values.reduce((sum, value) => sum + value, 0) / values.length;

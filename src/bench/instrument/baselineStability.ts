@@ -9,6 +9,7 @@
 import type { InstrumentRecord, InstrumentTest } from '../../assay/instrumentRecord.ts';
 import type { Finding } from '../../finding.ts';
 import { chiSquareQuantile } from '../../numerics/distributions.ts';
+import { mean, standardDeviation } from '../../numerics/meanAndDeviation.ts';
 import { fitLinear } from '../../numerics/linearFit.ts';
 import type { Spectrum } from '../../spectrum/spectrum.ts';
 import type { BlankScan, RepeatScan } from './scans.ts';
@@ -187,7 +188,7 @@ function driftTest(
     Number.isNaN(minutes) ? [] : [{ minutes, offset: shapes[i]!.offset }],
   );
   if (new Set(timed.map(({ minutes }) => minutes)).size < 3) return [];
-  const middle = timed.reduce((sum, { minutes }) => sum + minutes, 0) / timed.length;
+  const middle = mean(timed.map(({ minutes }) => minutes));
   const hours = Float64Array.from(timed, ({ minutes }) => (minutes - middle) / 60);
   const fit = fitLinear(
     [hours.map(() => 1), hours],
@@ -222,7 +223,7 @@ function flatnessTest(blanks: readonly BlankScan[], limit: number): InstrumentTe
     const entry = sums.get(nm);
     return entry ? [{ nm, value: entry.sum / entry.count }] : [];
   });
-  const level = points.reduce((sum, { value }) => sum + value, 0) / points.length;
+  const level = mean(points.map(({ value }) => value));
   let largest = 0;
   let uncertainty = 0;
   let first = 0;
@@ -231,7 +232,7 @@ function flatnessTest(blanks: readonly BlankScan[], limit: number): InstrumentTe
     while (nm - points[first]!.nm > FLATNESS_WINDOW / 2) first += 1;
     while (end < points.length && points[end]!.nm - nm <= FLATNESS_WINDOW / 2) end += 1;
     const near = points.slice(first, end).map(({ value }) => value);
-    const departure = near.reduce((sum, value) => sum + value, 0) / near.length - level;
+    const departure = mean(near) - level;
     if (Math.abs(departure) <= Math.abs(largest)) return;
     largest = departure;
     uncertainty = (near.length > 2 ? standardDeviation(near) : Math.abs(departure)) / Math.sqrt(near.length);
@@ -247,11 +248,6 @@ function flatnessTest(blanks: readonly BlankScan[], limit: number): InstrumentTe
     },
     [-limit, limit],
   );
-}
-
-function standardDeviation(values: readonly number[]): number {
-  const mean = values.reduce((sum, value) => sum + value, 0) / values.length;
-  return Math.sqrt(values.reduce((sum, value) => sum + (value - mean) ** 2, 0) / (values.length - 1));
 }
 
 const fewBlanks = (count: number): Finding => ({

@@ -7,6 +7,7 @@
 // Source      ours.
 import type { CheckedCell } from '../../assay/instrumentRecord.ts';
 import type { Finding } from '../../finding.ts';
+import { mean, standardDeviation } from '../../numerics/meanAndDeviation.ts';
 import { fitLinear } from '../../numerics/linearFit.ts';
 import type { Spectrum } from '../../spectrum/spectrum.ts';
 import { FRINGE_CHANCE_LIMIT, pathFromFringes } from './interferenceFringes.ts';
@@ -106,12 +107,9 @@ function mergeFillings(cells: readonly CheckedCell[]): CheckedCell[] {
   const keys = [...new Set(cells.map(({ name, method }) => `${name}\n${method}`))];
   return keys.map((key) => {
     const same = cells.filter(({ name, method }) => `${name}\n${method}` === key);
-    const mean = same.reduce((sum, { pathLength }) => sum + pathLength, 0) / same.length;
+    const paths = same.map(({ pathLength }) => pathLength);
     const largest = Math.max(...same.map(({ uncertainty }) => uncertainty));
-    const scatter =
-      same.length > 1
-        ? Math.sqrt(same.reduce((sum, { pathLength }) => sum + (pathLength - mean) ** 2, 0) / (same.length - 1))
-        : 0;
-    return { ...same[0]!, pathLength: mean, uncertainty: Math.hypot(largest, scatter) };
+    const scatter = same.length > 1 ? standardDeviation(paths) : 0;
+    return { ...same[0]!, pathLength: mean(paths), uncertainty: Math.hypot(largest, scatter) };
   });
 }

@@ -8,6 +8,7 @@
 // Source      see `photometricStandards.ts`; permitted error ±0.010 or 1 %, European Pharmacopoeia 2.2.25, from memory.
 import type { InstrumentTest, MeasuredProperty } from '../../assay/instrumentRecord.ts';
 import type { Finding } from '../../finding.ts';
+import { weightedMean } from '../../numerics/meanAndDeviation.ts';
 import { absorbanceAt } from './absorbanceAt.ts';
 import {
   DICHROMATE_430_NM,
@@ -117,13 +118,11 @@ function sulfuricReadings(scan: DichromateScan): Reading[] {
 }
 
 function meanScale(readings: readonly Reading[]): MeasuredProperty {
-  const weights = readings.map(({ own }) => 1 / own ** 2);
-  const total = weights.reduce((sum, weight) => sum + weight, 0);
-  const value = readings.reduce((sum, { relativeError }, i) => sum + (weights[i]! * relativeError) / total, 0);
-  const chiSquare = readings.reduce((sum, { relativeError }, i) => sum + weights[i]! * (relativeError - value) ** 2, 0);
-  const birgeSquared = readings.length > 1 ? Math.max(1, chiSquare / (readings.length - 1)) : 1;
-  const shared = Math.max(...readings.map((reading) => reading.shared));
-  return { value, uncertainty: Math.hypot(Math.sqrt(birgeSquared / total), shared) };
+  const { value, uncertainty } = weightedMean(
+    readings.map(({ relativeError }) => relativeError),
+    readings.map(({ own }) => own),
+  );
+  return { value, uncertainty: Math.hypot(uncertainty, Math.max(...readings.map(({ shared }) => shared))) };
 }
 
 function doubtsAboutScan(scan: DichromateScan): Finding[] {

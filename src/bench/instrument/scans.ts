@@ -18,6 +18,8 @@ export type InstrumentTestName = (typeof INSTRUMENT_TESTS)[number];
 
 interface Scan {
   readonly spectrum: Spectrum;
+  /** K, of the scan and of the certificate or published value it is compared with, where both are known */
+  readonly temperatures?: { readonly scanned: number; readonly certified: number };
 }
 
 export interface HolmiumScan extends Scan {

@@ -7,6 +7,7 @@
 // Source      any text on instrumental analysis; ASTM E387; limits see `photometricStandards.ts`.
 import type { InstrumentRecord } from '../../assay/instrumentRecord.ts';
 import type { Finding } from '../../finding.ts';
+import { mean, standardDeviation } from '../../numerics/meanAndDeviation.ts';
 import type { CutOffScan } from './scans.ts';
 import { judged, type TestOutcome } from './testOutcome.ts';
 
@@ -48,13 +49,12 @@ function darkness({ spectrum, opaque }: CutOffScan) {
     if (nm >= opaque[0] && nm <= opaque[1] && Number.isFinite(absorbance)) transmittances.push(10 ** -absorbance);
   });
   if (transmittances.length < 3) return null;
-  const mean = transmittances.reduce((sum, t) => sum + t, 0) / transmittances.length;
-  const variance = transmittances.reduce((sum, t) => sum + (t - mean) ** 2, 0) / (transmittances.length - 1);
-  const uncertainty = Math.sqrt(variance / transmittances.length);
+  const average = mean(transmittances);
+  const uncertainty = standardDeviation(transmittances) / Math.sqrt(transmittances.length);
   return {
     nm: (opaque[0] + opaque[1]) / 2,
-    transmittance: { value: mean, uncertainty },
-    share: { value: mean / (1 - mean), uncertainty: uncertainty / (1 - mean) ** 2 },
+    transmittance: { value: average, uncertainty },
+    share: { value: average / (1 - average), uncertainty: uncertainty / (1 - average) ** 2 },
   };
 }
 

@@ -8,6 +8,7 @@ import type { InstrumentRecord } from '../../assay/instrumentRecord.ts';
 import type { Finding } from '../../finding.ts';
 import { TankhueError } from '../../errors.ts';
 import type { Spectrum } from '../../spectrum/spectrum.ts';
+import { celsiusFromKelvin } from '../../units.ts';
 import { baselineStability, DEFAULT_BASELINE_LIMITS, type BaselineLimits } from './baselineStability.ts';
 import type { MeasurementModel } from '../planning/measurementModel.ts';
 import { cellPaths } from './cellPath.ts';
@@ -84,7 +85,7 @@ export function verifyInstrument(
     cells: cells.property,
     tests,
     consequences: [],
-    findings: [...outcomes.flatMap((outcome) => outcome.findings), ...untested(scans)],
+    findings: [...outcomes.flatMap((outcome) => outcome.findings), ...offTemperature(scans), ...untested(scans)],
     assumed: [
       ...options.assumed,
       'limits are kept or broken only past a guard band of 1.96 standard uncertainties (JCGM 106); between is undecided',
@@ -95,6 +96,27 @@ export function verifyInstrument(
     inputs: inputsOf(scans),
   };
   return { ...record, consequences: instrumentConsequences(record, models) };
+}
+
+/** K between scan and certificate that are passed over [common practice]. */
+const TEMPERATURE_TOLERANCE = 2;
+
+/** Certificates of another temperature: said, never corrected, because no coefficient is at hand. */
+function offTemperature(scans: readonly InstrumentScan[]): Finding[] {
+  return scans.flatMap(({ test, spectrum, temperatures }) => {
+    if (!temperatures || Math.abs(temperatures.scanned - temperatures.certified) <= TEMPERATURE_TOLERANCE) return [];
+    const [scanned, certified] = [temperatures.scanned, temperatures.certified].map((t) =>
+      celsiusFromKelvin(t).toFixed(1),
+    );
+    return [
+      {
+        code: 'temperature-off',
+        severity: 'caution' as const,
+        message: `expected ${test} ${spectrum.name} at the certificate's ${certified} °C, within ${TEMPERATURE_TOLERANCE} K; received ${scanned} °C: nothing was corrected`,
+        hint: 'bring solution and photometer to that temperature and scan again, or use a certificate for yours',
+      },
+    ];
+  });
 }
 
 /** What an assay leans on and nobody looked at. */

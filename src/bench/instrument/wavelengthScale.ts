@@ -9,6 +9,7 @@
 // Source      bands: see `photometricStandards.ts`; permitted error: European Pharmacopoeia 2.2.25.
 import type { InstrumentTest, MeasuredProperty } from '../../assay/instrumentRecord.ts';
 import type { Finding } from '../../finding.ts';
+import { mean, weightedMean } from '../../numerics/meanAndDeviation.ts';
 import { fitLinear } from '../../numerics/linearFit.ts';
 import { studentQuantile } from '../../numerics/distributions.ts';
 import { bandPosition } from './bandPositions.ts';
@@ -89,18 +90,17 @@ function doubtsAboutScan(spectrum: HolmiumScan['spectrum']): Finding[] {
 }
 
 function meanShift(bands: readonly SeenBand[]): MeasuredProperty {
-  const weights = bands.map(({ uncertainty }) => 1 / uncertainty ** 2);
-  const total = weights.reduce((sum, weight) => sum + weight, 0);
-  const value = bands.reduce((sum, { difference }, i) => sum + (weights[i]! * difference) / total, 0);
-  const chiSquare = bands.reduce((sum, { difference }, i) => sum + weights[i]! * (difference - value) ** 2, 0);
-  const birgeSquared = bands.length > 1 ? chiSquare / (bands.length - 1) : 1;
-  return { value, uncertainty: Math.hypot(Math.sqrt(Math.max(1, birgeSquared) / total), HOLMIUM_LIST_UNCERTAINTY) };
+  const { value, uncertainty } = weightedMean(
+    bands.map(({ difference }) => difference),
+    bands.map((band) => band.uncertainty),
+  );
+  return { value, uncertainty: Math.hypot(uncertainty, HOLMIUM_LIST_UNCERTAINTY) };
 }
 
 /** One shift for the whole axis is an approximation: says when the axis is stretched instead. */
 function stretchOf(bands: readonly SeenBand[]): Finding[] {
   if (bands.length < 4) return [];
-  const middle = bands.reduce((sum, { band }) => sum + band, 0) / bands.length;
+  const middle = mean(bands.map(({ band }) => band));
   const weight = Float64Array.from(bands, ({ uncertainty }) => 1 / uncertainty);
   const fit = fitLinear(
     [weight, weight.map((w, i) => (w * (bands[i]!.band - middle)) / 100)],

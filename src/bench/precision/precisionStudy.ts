@@ -16,6 +16,7 @@ import type {
 import { TankhueError } from '../../errors.ts';
 import type { Finding } from '../../finding.ts';
 import { chiSquareQuantile, fQuantile } from '../../numerics/distributions.ts';
+import { mean, standardDeviation } from '../../numerics/meanAndDeviation.ts';
 import { nestedAnova, type NestedLevel } from '../../numerics/nestedAnova.ts';
 import type { SpectrumOrigin } from '../../spectrum/spectrum.ts';
 import { grubbsLimit } from '../grubbs.ts';
@@ -125,15 +126,10 @@ function separableFactors(lines: readonly ReplicateLine[], factors: readonly str
 }
 
 function relativeToSample(lines: readonly ReplicateLine[], values: readonly number[]): number[] {
-  const sums = new Map<string, { sum: number; count: number }>();
-  lines.forEach(({ sample }, i) => {
-    const { sum, count } = sums.get(sample) ?? { sum: 0, count: 0 };
-    sums.set(sample, { sum: sum + values[i]!, count: count + 1 });
-  });
-  return lines.map(({ sample }, i) => {
-    const { sum, count } = sums.get(sample)!;
-    return values[i]! / (sum / count);
-  });
+  const bySample = new Map<string, number[]>();
+  lines.forEach(({ sample }, i) => bySample.set(sample, [...(bySample.get(sample) ?? []), values[i]!]));
+  const means = new Map([...bySample].map(([sample, own]) => [sample, mean(own)]));
+  return lines.map(({ sample }, i) => values[i]! / means.get(sample)!);
 }
 
 function reproducibilityOf(levels: readonly NestedLevel[]): PrecisionFigure {
@@ -145,7 +141,8 @@ function reproducibilityOf(levels: readonly NestedLevel[]): PrecisionFigure {
     (sum, { meanSquare, degreesOfFreedom }, m) => sum + (weights[m]! * meanSquare) ** 2 / degreesOfFreedom,
     0,
   );
-  return figureOf(variance, variance ** 2 / spread);
+  const innermost = levels[levels.length - 1]!.degreesOfFreedom;
+  return figureOf(variance, variance > 0 ? variance ** 2 / spread : innermost);
 }
 
 function figureOf(variance: number, degreesOfFreedom: number): PrecisionFigure {
@@ -222,10 +219,7 @@ function suspectScatter(
   cells: readonly (readonly [string, readonly number[]])[],
 ): Finding[] {
   if (cells.length < 2) return [];
-  const variances = cells.map(([, members]) => {
-    const mean = members.reduce((sum, v) => sum + v, 0) / members.length;
-    return members.reduce((sum, v) => sum + (v - mean) ** 2, 0) / (members.length - 1);
-  });
+  const variances = cells.map(([, members]) => standardDeviation(members) ** 2);
   const total = variances.reduce((sum, v) => sum + v, 0);
   const largest = variances.indexOf(Math.max(...variances));
   const share = variances[largest]! / total;
@@ -255,10 +249,10 @@ function suspectMeans(
   return samples.flatMap((sample) => {
     const own = cells
       .filter(([key]) => key === sample || key.startsWith(`${sample} / `))
-      .map(([key, members]) => ({ key, mean: members.reduce((sum, v) => sum + v, 0) / members.length }));
+      .map(([key, members]) => ({ key, mean: mean(members) }));
     if (own.length < 3) return [];
-    const centre = own.reduce((sum, { mean }) => sum + mean, 0) / own.length;
-    const spread = Math.sqrt(own.reduce((sum, { mean }) => sum + (mean - centre) ** 2, 0) / (own.length - 1));
+    const centre = mean(own.map((group) => group.mean));
+    const spread = standardDeviation(own.map((group) => group.mean));
     const farthest = own.reduce((a, b) => (Math.abs(b.mean - centre) > Math.abs(a.mean - centre) ? b : a));
     const distance = Math.abs(farthest.mean - centre) / spread;
     if (!(distance > grubbsLimit(own.length, 0.05))) return [];
