@@ -62,6 +62,13 @@ test('a lasting step is dated to where it began, with its size', () => {
   expect(alarm.signals).toContain('cumulative-sum');
 });
 
+test('a small step is dated to its beginning, though it is seen later', () => {
+  const pattern = [0.3, -0.5, 0.7, -0.2, -0.6, 0.4, -0.1, 0.5, -0.7, 0.2];
+  const chart = checkStandardChart(log(40, (i) => ({ value: i < 30 ? 50 + pattern[i % 10]! : 50.45 })));
+  // Seen with the eighth point on one side (the last of the pattern was on it too), begun with the first of the step.
+  expect(chart.alarms[0]).toMatchObject({ from: day(36), since: day(30), direction: 'up' });
+});
+
 test('the mode that moved with it is named first', () => {
   const steady = log(60, undefined, 3).points;
   const chart = checkStandardChart(

@@ -38,6 +38,27 @@ test('what was not measured has no consequence', () => {
   expect(instrumentConsequences(record, []).length).toBe(0);
 });
 
+test('stray light of the record acts by its law, below the ceiling only', () => {
+  const model = publishedModel('V4/V5');
+  const cuvette = { lower: 0.8, higher: 0.8, pathLength: 0.01, pathUncertainty: 0, fillingScatter: 0 };
+  const unaware = {
+    noise: { constant: 0.0003, shot: 0 },
+    pointsAveraged: 1,
+    strayLight: 0,
+    priors: DEFAULT_MODE_PRIORS,
+  };
+  const design = designCuvette(model, cuvette, { ...unaware, ceiling: 2 });
+  const shape = design.absorbance.map((A) => -Math.log10((10 ** -A + 0.001) / 1.001) - A);
+  const expected = Math.abs(disturbanceEffect(design, 0.8, 0.8, shape)!.share);
+  const positive = instrumentConsequences(record, [model])[0]!;
+  expect(positive.lines.find(({ source }) => source === 'stray light')!.stateOfCharge).toBeCloseTo(expected, 12);
+
+  const dark = designCuvette(model, { ...cuvette, pathLength: 0.05 }, { ...unaware, ceiling: 2 });
+  const inTheDark = dark.absorbance.map((A) => (A > 2 ? 1 : 0));
+  expect(inTheDark.some((value) => value === 1)).toBe(true);
+  expect(disturbanceEffect(dark, 0.8, 0.8, inTheDark)).toEqual({ share: 0, total: 0 });
+});
+
 // The stated effect is what the estimate itself does when its spectrum is spoiled so.
 test.each([
   ['V2/V3', 0.1],

@@ -164,6 +164,17 @@ describe('stray light', () => {
     expect(strayLight([{ ...cutOff, least: 3.2, spectrum: dark }]).tests[0]!.conformity).toBe('failed');
   });
 
+  // The same table: 0.01 % 4.000043, 0.1 % 3.000434, 1 % 2.004321.
+  test.each([
+    [0.0001, 4.000043427],
+    [0.001, 3.000434077],
+    [0.01, 2.004321374],
+  ])('a share of %s is the limit of absorbance %s', (share, limit) => {
+    const dark = scan('filter', 340, 370, 1, () => limit);
+    const cutOff = { test: 'cut-off', name: 'filter', opaque: [340, 370], least: 2, limitSource: 'test' } as const;
+    expect(strayLight([{ ...cutOff, spectrum: dark }]).property!.value / share).toBeCloseTo(1, 8);
+  });
+
   test('an instrument without numbers there is said, not passed', () => {
     const over = scan('filter', 340, 370, 1, () => NaN);
     const outcome = strayLight([
