@@ -69,3 +69,8 @@ export { photometerTraits } from './bench/planning/photometerTraits.ts';
 export { DEFAULT_WISH, MARKET_PATHS, marketCell, planMeasurement } from './bench/planning/planMeasurement.ts';
 export type * from './bench/planning/planMeasurement.ts';
 export { measurementPlanText } from './report/measurementPlanText.ts';
+export { balancePlant, type BalanceDocument, type SystemBalance } from './tanks/balance.ts';
+export { plantFromAssays } from './tanks/fromAssays.ts';
+export type { PlantReading, TankReading } from './tanks/reading.ts';
+export { balanceText } from './report/balanceText.ts';
+export { balanceCsv } from './report/balanceCsv.ts';

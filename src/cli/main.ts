@@ -6,6 +6,7 @@ import { TankhueError, VERSION } from '../index.ts';
 const VERBS: Readonly<Record<string, () => Promise<{ register: (program: Command) => void }>>> = {
   calibrate: () => import('./calibrate.ts'),
   assay: () => import('./assay.ts'),
+  balance: () => import('./balance.ts'),
   simulate: () => import('./simulate.ts'),
   verify: () => import('./verify.ts'),
   check: () => import('./check.ts'),
