@@ -68,7 +68,7 @@ export function assaySample(
   );
   const findings = [
     ...labelFindings(sample, choice),
-    ...opticalFindings(fit),
+    ...opticalFindings(fit, numbers.averageOxidationState.uncertainty!),
     ...domainFindings(fit, numbers.averageOxidationState.uncertainty!),
     ...uncertaintyFindings(fit, numbers.averageOxidationState.uncertainty!),
     ...sheetFindings(sample, calibration, offsetOf(fit)),

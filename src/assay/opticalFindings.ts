@@ -15,6 +15,8 @@ const SCORE_LIMIT = 3.2;
 const PATH_LIMIT = 2.3;
 const MATCH_CAUTION = 3.3;
 const MATCH_WITHHOLD = 6;
+/** Effects on the state of charge below one point never withhold it. */
+const SMALLEST_MOVE = 0.01;
 const INFORMATION_NEEDED = 0.6;
 /** Share of the total above which a state that cannot be there withholds the result. */
 const FOREIGN_WITHHOLD = 0.03;
@@ -84,21 +86,24 @@ const CAUSES: Readonly<Record<string, Cause>> = {
   },
 };
 
-export function opticalFindings(fit: PairFitOfSample): Finding[] {
+/** @param uncertainty standard uncertainty of the state of charge as it would be reported */
+export function opticalFindings(fit: PairFitOfSample, uncertainty: number): Finding[] {
   const findings = [...maskFindings(fit), ...foreignFindings(fit)];
   const excess = (fault: FaultScore): number =>
     Math.abs(scaledScore(fit, fault)) / (fault.name === 'path' ? PATH_LIMIT : SCORE_LIMIT);
   const worst = fit.faults.filter((fault) => fault.name in CAUSES).sort((a, b) => excess(b) - excess(a))[0];
   const named = worst && excess(worst) > 1 ? worst : null;
-  if (named) findings.push(causeFinding(fit, named));
+  if (named) findings.push(causeFinding(fit, named, uncertainty));
   if (fit.match > MATCH_CAUTION) findings.push(matchFinding(fit, named));
   return findings;
 }
 
-function causeFinding(fit: PairFitOfSample, fault: FaultScore): Finding {
+function causeFinding(fit: PairFitOfSample, fault: FaultScore, uncertainty: number): Finding {
   const cause = CAUSES[fault.name]!;
   const points = Math.abs(100 * fault.shareEffect);
-  const severity: Severity = Math.abs(fault.amplitude) > cause.withholdAbove && points > 1 ? 'withhold' : 'caution';
+  // What the fit did not follow may be as large as what it shows: an effect beyond U is not an answer with a doubt.
+  const moves = Math.abs(fault.shareEffect) > Math.max(2 * uncertainty, SMALLEST_MOVE);
+  const severity: Severity = moves || Math.abs(fault.amplitude) > cause.withholdAbove ? 'withhold' : 'caution';
   return {
     code: cause.code,
     severity,
