@@ -1,5 +1,5 @@
 import type { AssayNumbers, AssayResult, AssayState, ErrorSource, FitRecord } from './result.ts';
-import type { Finding } from '../finding.ts';
+import { bySeverity, type Finding } from '../finding.ts';
 import type { Calibration } from '../calibration/calibration.ts';
 import { PAIR_OF_SIDE, speciesOfPair, type Pair } from '../electrolyte/species.ts';
 import { DEFAULT_CEILING } from '../estimation/cuvette.ts';
@@ -9,7 +9,7 @@ import { dot } from '../numerics/gramSchmidt.ts';
 import { millimetresFromCentimetres } from '../units.ts';
 import { choosePair } from './choosePair.ts';
 import { errorSourcesOf } from './errorSources.ts';
-import { numbersOf } from './numbers.ts';
+import { numbersOf, withoutValues } from './numbers.ts';
 import { opticalFindings } from './opticalFindings.ts';
 import { fitSampleByPair, type PairFitOfSample } from './pairFit.ts';
 import { ASSUMED_DILUTION_UNCERTAINTY, type AssayOptions, type Sample } from './sample.ts';
@@ -103,9 +103,6 @@ const freedomOf = (source: ErrorSource, fit: PairFitOfSample): number =>
 
 const offsetOf = (fit: PairFitOfSample): number => fit.faults.find((fault) => fault.name === 'offset')?.amplitude ?? 0;
 
-const ORDER = { withhold: 0, caution: 1, note: 2 } as const;
-const bySeverity = (a: Finding, b: Finding): number => ORDER[a.severity] - ORDER[b.severity];
-
 const referenceFindings = (inUse: CalibrationInUse): Finding[] =>
   inUse.isReference
     ? [
@@ -129,21 +126,11 @@ function reported(
   const withheld = findings.some((one) => one.severity === 'withhold');
   const scaleUnknown = sample.pathLength === null || sample.dilution === null;
   if (withheld || (scaleUnknown && pair === 'V4/V5'))
-    return { ...nothing(numbers), state: 'withheld', unreported: numbers };
+    return { ...withoutValues(numbers), state: 'withheld', unreported: numbers };
   const state: AssayState = findings.some((one) => one.severity === 'caution') ? 'caution' : 'sound';
   if (!scaleUnknown) return { ...numbers, state };
-  const { concentration, totalVanadium } = nothing(numbers);
+  const { concentration, totalVanadium } = withoutValues(numbers);
   return { ...numbers, concentration, totalVanadium, state, unreported: numbers };
-}
-
-function nothing(numbers: AssayNumbers): AssayNumbers {
-  const empty = { value: null, uncertainty: null };
-  return {
-    concentration: Object.fromEntries(Object.keys(numbers.concentration).map((species) => [species, { ...empty }])),
-    totalVanadium: { ...empty },
-    averageOxidationState: { ...empty },
-    stateOfCharge: { ...empty, interval: null },
-  };
 }
 
 function fitRecord(fit: PairFitOfSample, keepCurve: boolean): FitRecord {

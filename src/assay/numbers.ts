@@ -108,3 +108,14 @@ function budgetOf(
     }))
     .sort((a, b) => b.averageOxidationState - a.averageOxidationState);
 }
+
+/** The same quantities without their values, for a result that is withheld. */
+export function withoutValues(numbers: AssayNumbers): AssayNumbers {
+  const empty = { value: null, uncertainty: null };
+  return {
+    concentration: Object.fromEntries(Object.keys(numbers.concentration).map((species) => [species, { ...empty }])),
+    totalVanadium: { ...empty },
+    averageOxidationState: { ...empty },
+    stateOfCharge: { ...empty, interval: null },
+  };
+}

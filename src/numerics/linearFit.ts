@@ -11,6 +11,8 @@ export interface LinearFit {
   readonly coefficients: Float64Array;
   /** row-major p × p */
   readonly covariance: Float64Array;
+  /** row-major p × p, R⁻¹R⁻ᵀ: the covariance where rows were scaled by deviations that are known */
+  readonly unscaledCovariance: Float64Array;
   readonly standardErrors: Float64Array;
   readonly residualSumOfSquares: number;
   readonly degreesOfFreedom: number;
@@ -47,14 +49,16 @@ export function fitLinear(columns: readonly Float64Array[], y: Float64Array): Li
     residualSumOfSquares += residual * residual;
   }
   const variance = residualSumOfSquares / degreesOfFreedom;
-  const covariance = new Float64Array(count * count);
+  const unscaledCovariance = new Float64Array(count * count);
   for (let i = 0; i < count; i++)
     for (let j = 0; j < count; j++)
       for (let k = Math.max(i, j); k < count; k++)
-        covariance[i * count + j]! += variance * inverse[i * count + k]! * inverse[j * count + k]!;
+        unscaledCovariance[i * count + j]! += inverse[i * count + k]! * inverse[j * count + k]!;
+  const covariance = unscaledCovariance.map((value) => variance * value);
   return {
     coefficients,
     covariance,
+    unscaledCovariance,
     standardErrors: Float64Array.from({ length: count }, (_, i) => Math.sqrt(covariance[i * count + i]!)),
     residualSumOfSquares,
     degreesOfFreedom,
