@@ -79,7 +79,8 @@ const NEAREST = 6;
 /** mV, resolution of any meter */
 const LEAST_SCATTER = 0.03;
 const ROUNDS = 40;
-const SETTLED = 1e-6;
+/** mL */
+const SETTLED = 1e-5;
 
 interface Prior {
   readonly mean: number;
@@ -176,24 +177,20 @@ const stateOf = (problem: Problem, { v, shared }: Parameters, levels: readonly n
   levels,
 });
 
-/** mV of the model, with its sign so that it rises. */
-function modelled(
-  problem: Problem,
+/** The model of one branch: mV, with its sign so that it rises, of a volume (corrected for neighbours) and the volume delivered. */
+function branchCurve(
+  { course, curve, nernst }: Problem,
   branch: Branch,
   level: number,
-  parameters: Parameters,
-  volume: number,
-  delivered: number,
-): number {
-  const { course } = problem;
-  const state = stateOf(problem, parameters, []);
-  const formed = volume - branch.from(state.v) + productOf(course, branch, state);
-  const ratio = branch.to === null ? formed : formed / (branch.to(state.v) - volume);
-  return (
+  state: BranchState,
+): (volume: number, delivered: number) => number {
+  const begin = branch.from(state.v) - productOf(course, branch, state);
+  const end = branch.to === null ? null : branch.to(state.v);
+  const middle = middleOf(curve);
+  return (volume, delivered) =>
     level +
-    state.slope * Math.log10(ratio) +
-    course.direction * slowEffect(branch, state.effects, problem.nernst, delivered, middleOf(problem.curve))
-  );
+    state.slope * Math.log10(end === null ? volume - begin : (volume - begin) / (end - volume)) +
+    course.direction * slowEffect(branch, state.effects, nernst, delivered, middle);
 }
 
 interface Linearised {
@@ -214,45 +211,42 @@ function linearised(
   const { v, shared } = parameters;
   const size = v.length + shared.length + selected.length;
   const steps = [...v.map(() => 1e-6), 1e-7, 1e-7, 1e-9, 1e-6].slice(0, v.length + shared.length);
-  const rows: number[][] = [];
-  const right: number[] = [];
+  const count = selected.reduce((sum, { readings }) => sum + readings.length, 0) + v.length + shared.length;
+  const columns = Array.from({ length: size }, () => new Float64Array(count));
+  const right = new Float64Array(count);
+  let row = 0;
   const residuals: { index: number; inUnits: number }[] = [];
   selected.forEach(({ branch, readings }, k) => {
-    const level = parameters.levels[k]!;
-    const nudged = steps.map((h, j) =>
-      addTo(
-        parameters,
-        Float64Array.from({ length: size }, (_, m) => (m === j ? h : 0)),
-      ),
-    );
+    const modelOf = (p: Parameters) => branchCurve(problem, branch, parameters.levels[k]!, stateOf(problem, p, []));
+    const model = modelOf(parameters);
+    const nudged = steps.map((h, j) => {
+      const change = new Float64Array(size);
+      change[j] = h;
+      return modelOf(addTo(parameters, change));
+    });
     for (const { index, volume, formed, left } of readings) {
       const delivered = curve.volume[index]!;
-      const model = modelled(problem, branch, level, parameters, volume, delivered);
-      const inUnits =
-        (course.direction * curve.potential[index]! - model) /
-        Math.hypot(scatter, (nernst / Math.LN10) * (1 / formed + 1 / left) * readingUncertainty);
-      const weight = inUnits / (course.direction * curve.potential[index]! - model || Infinity);
+      const expected = model(volume, delivered);
       // A reading on the far side of an end that is still on its way has no logarithm yet.
-      if (!Number.isFinite(model)) continue;
-      rows.push([
-        ...nudged.map(
-          (p, j) => ((modelled(problem, branch, level, p, volume, delivered) - model) / steps[j]!) * weight,
-        ),
-        ...selected.map((_, m) => (m === k ? weight : 0)),
-      ]);
-      right.push(inUnits);
+      if (!Number.isFinite(expected)) continue;
+      const weight = 1 / Math.hypot(scatter, (nernst / Math.LN10) * (1 / formed + 1 / left) * readingUncertainty);
+      const inUnits = (course.direction * curve.potential[index]! - expected) * weight;
+      nudged.forEach((shifted, j) => {
+        columns[j]![row] = ((shifted(volume, delivered) - expected) / steps[j]!) * weight;
+      });
+      columns[steps.length + k]![row] = weight;
+      right[row++] = inUnits;
       residuals.push({ index, inUnits });
     }
   });
   const observe = (j: number, difference: number, deviation: number): void => {
-    rows.push(Array.from({ length: size }, (_, m) => (m === j ? 1 / deviation : 0)));
-    right.push(difference / deviation);
+    columns[j]![row] = 1 / deviation;
+    right[row++] = difference / deviation;
   };
   v.forEach((value, j) => observe(j, jumps[j]!.volume - value, jumps[j]!.uncertainty));
   priors.forEach(({ mean, deviation }, j) => observe(v.length + j, mean - shared[j]!, deviation));
-  const columns = Array.from({ length: size }, (_, j) => Float64Array.from(rows, (row) => row[j]!));
   return {
-    fit: fitLinear(columns, Float64Array.from(right)),
+    fit: fitLinear(columns, right),
     chiSquare: residuals.reduce((sum, { inUnits }) => sum + inUnits * inUnits, 0),
     freedom: residuals.length - v.length - selected.length,
     residuals,

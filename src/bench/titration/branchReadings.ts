@@ -79,8 +79,9 @@ export function firstLevels(
     const start = branch.from(state.v);
     const end = branch.to?.(state.v) ?? Infinity;
     const product = productOf(course, branch, state);
+    const stretch = stretchOf(course, branch, state.v, jumps);
     const estimates = Array.from(curve.volume.keys())
-      .filter((i) => inStretch(curve.volume[i]!, course, branch, state.v, jumps))
+      .filter((i) => within(curve.volume[i]!, stretch))
       .map((i) => {
         const volume = curve.volume[i]!;
         const x = course.direction * (curve.potential[i]! - slowEffect(branch, state.effects, nernst, volume, middle));
@@ -127,38 +128,40 @@ export function selectReadings(
       return (after ? 1 : -1) * course.direction * (curve.potential[i]! - jump.potential) > UNKNOWN_REACH;
     });
   return course.branches
-    .map((branch, k) => ({
-      branch,
-      readings: !known(k)
-        ? []
-        : Array.from(curve.volume.keys())
-            .filter((i) => inStretch(curve.volume[i]!, course, branch, state.v, jumps) && clearOfUnknown(k, i))
-            .map((i) => ({
-              index: i,
-              volume: curve.volume[i]! - share(k + 1, i).formed + (k > 0 ? share(k - 1, i).left : 0),
-              ...share(k, i),
-            }))
-            .filter(({ formed, left }) => Math.min(formed, left) > nearest),
-    }))
+    .map((branch, k) => {
+      const stretch = stretchOf(course, branch, state.v, jumps);
+      const readings: BranchReading[] = [];
+      for (let i = 0; known(k) && i < curve.volume.length; i++) {
+        const volume = curve.volume[i]!;
+        if (!within(volume, stretch) || !clearOfUnknown(k, i)) continue;
+        const { formed, left } = share(k, i);
+        if (!(Math.min(formed, left) > nearest)) continue;
+        const neighbours = (k > 0 ? share(k - 1, i).left : 0) - share(k + 1, i).formed;
+        readings.push({ index: i, volume: volume + neighbours, formed, left });
+      }
+      return { branch, readings };
+    })
     .filter(({ readings }) => readings.length >= FEWEST);
 }
 
 export const middleOf = (curve: TitrationCurve): number => (curve.volume[0]! + curve.volume.at(-1)!) / 2;
 
-/** Between two ends, where an end that is a jump is as wide as its steepest interval. */
-function inStretch(
-  volume: number,
+/** From where to where a branch reaches; an end that is a jump is as wide as its steepest interval. */
+function stretchOf(
   course: Course,
   branch: Branch,
   v: readonly number[],
   jumps: readonly Jump[],
-): boolean {
+): readonly [number, number] {
   const start = jumpOf(course, branch.from);
   const end = branch.to === null ? null : jumpOf(course, branch.to);
-  const low = start === null ? branch.from(v) : jumps[start]?.interval[1];
-  const high = end === null ? (branch.to?.(v) ?? Infinity) : (jumps[end]?.interval[0] ?? branch.to!(v));
-  return low !== undefined && volume >= low && volume <= high;
+  return [
+    start === null ? branch.from(v) : (jumps[start]?.interval[1] ?? Infinity),
+    end === null ? (branch.to?.(v) ?? Infinity) : (jumps[end]?.interval[0] ?? branch.to!(v)),
+  ];
 }
+
+const within = (volume: number, [low, high]: readonly [number, number]): boolean => volume >= low && volume <= high;
 
 /** Which jump of the curve an end of a branch is; null for the start of the curve and what lies beyond the jumps named. */
 export function jumpOf(course: Course, bound: (v: readonly number[]) => number): number | null {
