@@ -7,7 +7,7 @@ export const celsiusFromKelvin = (kelvin: number): number => kelvin - 273.15;
 
 /** Transmittance 0…1 to decadic absorbance; NaN where nothing came through (transmittance ≤ 0), because no absorbance can be stated. */
 export const absorbanceFromTransmittance = (transmittance: number): number =>
-  transmittance > 0 ? -Math.log10(transmittance) : NaN;
+  transmittance > 0 ? 0 - Math.log10(transmittance) : NaN;
 
 /** Per cent transmittance to decadic absorbance. */
 export const absorbanceFromPercentTransmittance = (percent: number): number =>

@@ -28,16 +28,24 @@ function belongsAbove(cells: readonly string[]): boolean {
   return axisFirst || namesOverPairs || cells.every((cell) => cell !== '');
 }
 
-function rowsAbove(lines: readonly string[], separator: Separator, width: number): string[][] {
+interface CaptionRows {
+  readonly rows: string[][];
+  /** index of the highest of them */
+  readonly first: number;
+}
+
+function rowsAbove(lines: readonly string[], separator: Separator, width: number): CaptionRows {
   const rows: string[][] = [];
+  let first = lines.length;
   for (let i = lines.length - 1; i >= 0 && rows.length < MOST_ROWS; i--) {
     if (rows.length === 0 && isRule(lines[i]!)) continue;
     const cells = captionCells(lines[i]!, separator, width);
     if (!cells || (rows.length > 0 && !belongsAbove(cells))) break;
     rows.unshift(cells);
+    first = i;
     if (!cells.every((cell) => cell === '' || isUnitOnly(cell))) break;
   }
-  return rows;
+  return { rows, first };
 }
 
 const firstKnown = <Unit>(captions: readonly string[], unitOf: (caption: string) => Unit | null): Unit | null => {
@@ -58,8 +66,9 @@ export class Captions {
    * @param width cells in a row of numbers
    */
   constructor(above: readonly string[], separator: Separator, width: number) {
-    this.#rows = rowsAbove(above, separator, width);
-    this.#prose = above;
+    const { rows, first } = rowsAbove(above, separator, width);
+    this.#rows = rows;
+    this.#prose = above.slice(0, first);
   }
 
   /** Captions of a column from top to bottom, empty ones left out. */

@@ -100,7 +100,7 @@ export function decideOrdinateUnit(
   const fits: Record<OrdinateUnit, boolean> = {
     A: range.most <= MOST_ABSORBANCE && range.least >= -MOST_ABSORBANCE,
     mA: range.most <= MOST_ABSORBANCE * 1000,
-    '%T': range.most > MOST_TRANSMITTANCE && range.most <= MOST_TRANSMITTANCE * 100,
+    '%T': range.most <= 0 || (range.most > MOST_TRANSMITTANCE && range.most <= MOST_TRANSMITTANCE * 100),
     T: range.most <= MOST_TRANSMITTANCE,
   };
   if (caption === 'T' && range.most >= LEAST_CLEAR_PERCENT && fits['%T'])

@@ -1,6 +1,5 @@
 import { TankhueError, quoted } from '../errors.ts';
 import { Captions } from './captions.ts';
-import { kindOfCell } from './cells.ts';
 import type { Encoding } from './decodeText.ts';
 import { findNumberBlock, strictlyMonotonic, type NumberBlock } from './numberBlock.ts';
 import { numberFromText } from './numberText.ts';
@@ -32,13 +31,25 @@ function headOf(lines: Iterator<string>): string[] {
   return head;
 }
 
-/** The block may have been cut short at its top by a bad line: rows above it that still look like rows belong to it. */
+/** Rows above a bad line that the block has lost at its top are looked for so far up. */
+const MOST_LOST = 5;
+
+/**
+ * The block may have been cut short at its top by a bad line. Rows above it whose axis value is where the axis would have it belong to
+ * the block, so that the bad line is shown and not taken for a caption.
+ */
 function firstRow(head: readonly string[], block: NumberBlock): number {
   if (block.orientation === 'rows') return block.first;
+  const axisAt = (line: number): number => {
+    const cells = cellsOfBlock(head[line] ?? '', block);
+    return cells.length === block.cells ? numberFromText(cells[0]!, block.decimal) : NaN;
+  };
+  const start = axisAt(block.first);
+  const step = axisAt(block.first + 1) - start;
   let first = block.first;
-  for (let i = block.first - 1; i >= Math.max(0, block.first - 5); i--) {
-    const cells = cellsOfBlock(head[i]!, block);
-    if (cells.length === block.cells && kindOfCell(cells[0]!) === 'number') first = i;
+  for (let i = block.first - 1; i >= Math.max(0, block.first - MOST_LOST); i--) {
+    const steps = (start - axisAt(i)) / step;
+    if (steps > 0.5 && steps < 2 * (block.first - i)) first = i;
   }
   return first;
 }
@@ -71,7 +82,9 @@ function columnsOrPairs(store: TableStore, captions: Captions, file: string, opt
   const all = Array.from({ length: store.width }, (_, i) => i);
   const even = all.filter((i) => i % 2 === 0);
   const alternate = store.width % 2 === 0;
-  if (alternate && even.every((i) => captions.axisUnit(i) !== null)) return 'pairs';
+  const named = all.filter((i) => captions.axisUnit(i) !== null);
+  if (named.length === 1 && all.every((i) => captions.of(i).length > 0)) return 'columns';
+  if (alternate && even.every((i) => named.includes(i))) return 'pairs';
   const axes = all.filter((i) => isAxisLike(store.column(i).filter((value) => !Number.isNaN(value))));
   const second = axes.find((i) => i !== 0);
   if (second === undefined) return 'columns';
