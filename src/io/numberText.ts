@@ -8,9 +8,12 @@ const GROUPED = /^[+-]?[1-9]\d{0,2}(?:,\d{3})+$|^[+-]?[1-9]\d{0,2}(?:\.\d{3})+$/
 /** True where comma or point could set off thousands: 1,234. */
 export const groupsThousands = (text: string): boolean => GROUPED.test(text);
 
-/** True where a comma can be nothing but a decimal mark: 0,5. */
-export const isDecimalComma = (text: string): boolean =>
-  text.includes(',') && NUMBER.test(text) && !groupsThousands(text);
+/** True where the mark can be nothing but a decimal mark: 0,5 or 0.5. */
+const showsDecimal = (text: string, mark: ',' | '.'): boolean =>
+  text.includes(mark) && NUMBER.test(text) && !groupsThousands(text);
+
+export const isDecimalComma = (text: string): boolean => showsDecimal(text, ',');
+export const isDecimalPoint = (text: string): boolean => showsDecimal(text, '.');
 
 /** True for a number with either decimal mark and no grouping of thousands. */
 export const looksLikeNumber = (text: string): boolean => NUMBER.test(text);

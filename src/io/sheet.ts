@@ -2,7 +2,7 @@ import Papa from 'papaparse';
 import { TankhueError, TankhueErrors, quoted } from '../errors.ts';
 import { decodeText } from './decodeText.ts';
 import { listed, nearest } from './nearest.ts';
-import { groupsThousands, isDecimalComma, numberFromText } from './numberText.ts';
+import { groupsThousands, isDecimalComma, isDecimalPoint, numberFromText } from './numberText.ts';
 
 /** One row of a sheet: texts by column, and where each stands, for messages. */
 export interface SheetRow {
@@ -80,7 +80,7 @@ export function readSheet(
     })),
     columns,
     unknownColumns: columns.filter((column) => column !== '' && !known.includes(column)),
-    decimalComma: cells.some(isDecimalComma) && !cells.some((cell) => /^[+-]?\d*\.\d+$/.test(cell)),
+    decimalComma: cells.some(isDecimalComma) && !cells.some(isDecimalPoint),
   };
 }
 
