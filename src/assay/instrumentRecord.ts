@@ -66,8 +66,8 @@ export interface InstrumentRecord {
   strayLight: (MeasuredProperty & { nm: number }) | null;
   /** measured absorbance over true absorbance − 1; null = not measured */
   photometricScale: MeasuredProperty | null;
-  /** σ² = constant² + shot²·10^A, absorbance per point; shot null = not measured apart; null = not measured */
-  noise: { constant: number; shot: number | null } | null;
+  /** σ² = constant² + shot²·10^A, absorbance per point, points `step` nm apart; shot null = not measured apart; null = not measured */
+  noise: { constant: number; shot: number | null; step: number } | null;
   cells: CheckedCell[];
   tests: InstrumentTest[];
   consequences: InstrumentConsequence[];

@@ -1,5 +1,13 @@
 import type { Command } from 'commander';
-import { chartText, checkStandardChart, DEFAULT_CHART_DESIGN, readCheckLog, TankhueError } from '../index.ts';
+import {
+  benchReport,
+  chartPicture,
+  chartText,
+  checkStandardChart,
+  DEFAULT_CHART_DESIGN,
+  readCheckLog,
+  TankhueError,
+} from '../index.ts';
 import { readFileBytes, sha256Of, writeWhole } from '../io/files.ts';
 import { optionOf } from './options.ts';
 
@@ -12,6 +20,7 @@ interface CheckOptions {
   slack: number;
   sumLimit: number;
   out?: string;
+  report?: string;
   format: 'text' | 'json';
 }
 
@@ -55,6 +64,7 @@ export function register(program: Command): void {
       cumulativeSum.limit,
     )
     .option('--out <file>', 'write the chart as JSON')
+    .option('--report <file>', 'write text and pictures as one HTML file')
     .option('--format <format>', 'text or json', 'text')
     .action((log: string, options: CheckOptions) => run(command, log, options));
 }
@@ -86,6 +96,12 @@ function run(command: Command, file: string, options: CheckOptions): void {
   });
   const json = `${JSON.stringify(chart, null, 1)}\n`;
   if (options.out !== undefined) writeWhole(options.out, json, [file]);
+  if (options.report !== undefined)
+    writeWhole(
+      options.report,
+      benchReport(`Check standard, ${chart.quantity}`, chartText(chart), [chartPicture(chart)]),
+      [file],
+    );
   process.stdout.write(options.format === 'json' ? json : chartText(chart));
   if (chart.state === 'past-action') process.exitCode = 4;
 }

@@ -1,6 +1,8 @@
 import type { Command } from 'commander';
 import {
+  benchReport,
   DEFAULT_WISH,
+  measurementMapPicture,
   dilutionBy,
   dilutionsFrom,
   MARKET_PATHS,
@@ -40,6 +42,7 @@ interface PlanOptions {
   fillings: number;
   calibration?: string;
   out?: string;
+  report?: string;
   format: 'text' | 'json';
 }
 
@@ -81,6 +84,7 @@ export function register(plan: Command): void {
     )
     .option('--calibration <file>', 'calibration file; the shipped reference without it')
     .option('--out <file>', 'write the plan as JSON')
+    .option('--report <file>', 'write text and map as one HTML file')
     .option('--format <format>', 'text or json', 'text')
     .action((options: PlanOptions) => run(command, options));
 }
@@ -108,7 +112,7 @@ function run(command: Command, options: PlanOptions): void {
   const result = planMeasurement(
     measurementModelOf(pair),
     { side: options.side, totalVanadium: options.total, stateOfCharge: options.charge / 100 },
-    photometerTraits(record, options.ceiling),
+    photometerTraits(record, pair.model.wavelength, options.ceiling),
     cellsFrom(options.cells, record),
     dilutionsOf(options.dilutions),
     { stateOfCharge: options.wish / 100, mostFillings: options.fillings },
@@ -116,6 +120,12 @@ function run(command: Command, options: PlanOptions): void {
   const json = `${JSON.stringify(result, null, 1)}\n`;
   const inputs = [options.instrument, options.calibration].filter((each) => each !== undefined);
   if (options.out !== undefined) writeWhole(options.out, json, inputs);
+  if (options.report !== undefined)
+    writeWhole(
+      options.report,
+      benchReport('Plan of a measurement', measurementPlanText(result), [measurementMapPicture(result)]),
+      inputs,
+    );
   process.stdout.write(options.format === 'json' ? json : measurementPlanText(result));
   if (result.advice === null) process.exitCode = 4;
 }

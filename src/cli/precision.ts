@@ -1,9 +1,10 @@
 import type { Command } from 'commander';
-import { precisionStudy, precisionText, readReplicateSheet } from '../index.ts';
+import { benchReport, precisionStudy, precisionText, readReplicateSheet } from '../index.ts';
 import { readFileBytes, sha256Of, writeWhole } from '../io/files.ts';
 
 interface PrecisionOptions {
   out?: string;
+  report?: string;
   format: 'text' | 'json';
 }
 
@@ -13,6 +14,7 @@ export function register(program: Command): void {
     .description('sheet of replicate assays → repeatability and reproducibility, level by level')
     .argument('<sheet>', 'assays as CSV with columns such as laboratory, operator, day, filling added')
     .option('--out <file>', 'write the record that later assays take with --precision')
+    .option('--report <file>', 'write the text as one HTML file')
     .option('--format <format>', 'text or json', 'text')
     .action((sheet: string, options: PrecisionOptions) => run(command, sheet, options));
 }
@@ -24,5 +26,7 @@ function run(command: Command, sheet: string, options: PrecisionOptions): void {
   const record = precisionStudy(readReplicateSheet(bytes, sheet, sha256Of(bytes)));
   const json = `${JSON.stringify(record, null, 1)}\n`;
   if (options.out !== undefined) writeWhole(options.out, json, [sheet]);
+  if (options.report !== undefined)
+    writeWhole(options.report, benchReport('Precision of assays', precisionText(record), []), [sheet]);
   process.stdout.write(options.format === 'json' ? json : precisionText(record));
 }

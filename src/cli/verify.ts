@@ -1,6 +1,8 @@
 import { dirname, isAbsolute, join } from 'node:path';
 import type { Command } from 'commander';
 import {
+  benchReport,
+  conformityPicture,
   findColumn,
   instrumentText,
   measurementModelOf,
@@ -29,6 +31,7 @@ interface VerifyOptions extends ReadOptions {
   blank?: string;
   calibration?: string;
   out?: string;
+  report?: string;
   format: 'text' | 'json';
 }
 
@@ -51,6 +54,7 @@ export function register(program: Command): void {
     .option('--date <date>', 'when it was checked, for the record, e.g. 2026-05-17', '')
     .option('--calibration <file>', 'what the faults mean for assays with this calibration; the shipped one without it')
     .option('--out <file>', 'write the record that later assays take with --instrument')
+    .option('--report <file>', 'write text and picture as one HTML file')
     .option('--format <format>', 'text or json', 'text')
     .action((files: string[], options: VerifyOptions) => run(command, files, options));
   for (const option of readingOptions()) command.addOption(option);
@@ -72,7 +76,14 @@ function run(command: Command, files: string[], options: VerifyOptions): void {
     calibration.pairs.map(measurementModelOf),
   );
   const json = `${JSON.stringify(record, null, 1)}\n`;
-  if (options.out !== undefined) writeWhole(options.out, json, [...files, ...shelf.paths]);
+  const inputs = [...files, ...shelf.paths];
+  if (options.out !== undefined) writeWhole(options.out, json, inputs);
+  if (options.report !== undefined)
+    writeWhole(
+      options.report,
+      benchReport('Check of the photometer', instrumentText(record), [conformityPicture(record)]),
+      inputs,
+    );
   process.stdout.write(options.format === 'json' ? json : instrumentText(record));
   if (record.state === 'failed') process.exitCode = 4;
 }

@@ -3,6 +3,7 @@ import type { InstrumentRecord } from '../assay/instrumentRecord.ts';
 import { finding, finiteNumber, measured, notNegative, readStrictJson } from './strictJson.ts';
 
 const verdict = v.picklist(['passed', 'undecided', 'failed']);
+const positive = v.pipe(finiteNumber, v.gtValue(0, 'expected more than 0'));
 const share = v.pipe(notNegative, v.maxValue(1, 'expected a share of 1 or less'));
 
 const instrumentRecord = v.looseObject({
@@ -15,11 +16,11 @@ const instrumentRecord = v.looseObject({
   slopePrior: v.nullable(notNegative),
   strayLight: v.nullable(v.object({ value: share, uncertainty: notNegative, nm: finiteNumber })),
   photometricScale: v.nullable(measured),
-  noise: v.nullable(v.object({ constant: notNegative, shot: v.nullable(notNegative) })),
+  noise: v.nullable(v.object({ constant: notNegative, shot: v.nullable(notNegative), step: positive })),
   cells: v.array(
     v.object({
       name: v.string(),
-      pathLength: v.pipe(finiteNumber, v.gtValue(0, 'expected a path above 0 cm')),
+      pathLength: positive,
       uncertainty: notNegative,
       method: v.string(),
     }),

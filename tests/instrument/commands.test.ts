@@ -49,6 +49,8 @@ describe('tankhue verify', () => {
       'bench 2',
       '--out',
       files('bench-2.json'),
+      '--report',
+      files('bench-2.html'),
     );
     expect(status).toBe(0);
     expect(stdout).toMatch(/^bench 2 — PASSED/);
@@ -58,6 +60,7 @@ describe('tankhue verify', () => {
     expect(stderr).toContain('columns kept but not used: operator');
     const record = JSON.parse(readFileSync(files('bench-2.json'), 'utf8')) as InstrumentRecord;
     expect(record.schema).toBe('tankhue/instrument/1');
+    expect(readFileSync(files('bench-2.html'), 'utf8').match(/<circle/g)).toHaveLength(record.tests.length);
     expect(record.wavelengthShift!.value).toBeCloseTo(0.4, 2);
     expect(record.cells[0]!.pathLength).toBeCloseTo(0.0103, 5);
     expect(record.consequences).toHaveLength(3);

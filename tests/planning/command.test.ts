@@ -1,5 +1,6 @@
+import { readFileSync } from 'node:fs';
 import { expect, test } from 'vitest';
-import { tankhue } from '../support/command.ts';
+import { folderWith, tankhue } from '../support/command.ts';
 
 test('a plan says the cell, the dilution, the fillings, and shows the map', () => {
   const { status, stdout } = tankhue(
@@ -20,6 +21,25 @@ test('a plan says the cell, the dilution, the fillings, and shows the map', () =
   expect(stdout).toMatch(/^negative, about 1\.6 mol\/L at 50 % — USE the 1 mm cell, undiluted/);
   expect(stdout).toMatch(/dilution\s+1\s+20/);
   expect(stdout).toMatch(/10 mm\s+#/);
+});
+
+test('the report holds a field for each cell and dilution', () => {
+  const file = folderWith({})('plan.html');
+  expect(
+    tankhue(
+      'plan',
+      'measurement',
+      '--side',
+      'negative',
+      '--cells',
+      '1mm,10mm',
+      '--dilutions',
+      '1,5,20',
+      '--report',
+      file,
+    ).status,
+  ).toBe(0);
+  expect(readFileSync(file, 'utf8').match(/<rect/g)).toHaveLength(6);
 });
 
 test('no usable cell is status 4, with what to buy', () => {

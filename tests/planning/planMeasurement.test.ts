@@ -17,6 +17,7 @@ import { namedModes } from '../../src/estimation/namedModes.ts';
 import { prepare } from '../../src/estimation/prepare.ts';
 import { reduce, solve } from '../../src/estimation/solve.ts';
 import { normalDeviates } from '../instrument/simulated.ts';
+import { processorSeconds } from '../support/processorTime.ts';
 import { PHOTOMETER, publishedModel, publishedPairModel } from './publishedModel.ts';
 
 const UNDILUTED: DilutionAtHand = { factor: 1, uncertainty: 0, glassware: '' };
@@ -266,8 +267,9 @@ describe('plan', () => {
   test('all wavelengths, 8 paths, 30 dilutions take less than a second', () => {
     const eight = [...MARKET_PATHS, 0.03].map(marketCell);
     const thirty = Array.from({ length: 30 }, (_, i) => diluted(1 + 3 * i));
-    const start = performance.now();
-    planMeasurement(publishedModel('V4/V5'), POSITIVE, PHOTOMETER, eight, thirty);
-    expect(performance.now() - start).toBeLessThan(1000);
+    const seconds = processorSeconds(() =>
+      planMeasurement(publishedModel('V4/V5'), POSITIVE, PHOTOMETER, eight, thirty),
+    );
+    expect(seconds).toBeLessThan(1);
   });
 });

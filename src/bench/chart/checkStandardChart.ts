@@ -229,7 +229,6 @@ function alarmsOf(
       baselinePoints,
       shifted.map((i) => log.points[i]!),
     );
-    const lotBefore = sinceStart > 0 ? log.points[judged[sinceStart - 1]!]!.lot : null;
     alarms.push({
       from: log.points[first]!.at,
       to: log.points[judged[end - 1]!]!.at,
@@ -241,7 +240,7 @@ function alarmsOf(
         uncertainty: baseline.standardDeviation / Math.sqrt(shifted.length),
       },
       movedModes: moved,
-      suggestion: suggestionFor(log, log.points[first]!.lot, lotBefore, moved),
+      suggestion: suggestionFor(log, newLotNear(log, judged, sinceStart), moved),
     });
   }
   return alarms;
@@ -263,11 +262,22 @@ function beginningOf(judged: readonly number[], deviations: Float64Array, signal
   return best;
 }
 
-function suggestionFor(log: CheckLog, lot: string, lotBefore: string | null, moved: readonly MovedMode[]): string {
+/** Points by which the beginning of a change is uncertain at the least. */
+const NEAR = 2;
+
+/** The lot that was new within a few points of where a change began; null where the lot stayed. */
+function newLotNear(log: CheckLog, judged: readonly number[], beginning: number): string | null {
+  for (let s = Math.max(1, beginning - NEAR); s <= Math.min(judged.length - 1, beginning + NEAR); s++) {
+    const lot = log.points[judged[s]!]!.lot;
+    if (lot !== log.points[judged[s - 1]!]!.lot) return lot;
+  }
+  return null;
+}
+
+function suggestionFor(log: CheckLog, newLot: string | null, moved: readonly MovedMode[]): string {
   if (moved.length > 0)
     return `${moved[0]!.mode} moved with it (${moved[0]!.z.toFixed(1)} standard errors): ${moved[0]!.likelyCause}`;
-  if (lotBefore !== null && lotBefore !== lot)
-    return `it began with lot ${lot}: its assigned value or the way it was made comes first`;
+  if (newLot !== null) return `it began with lot ${newLot}: its assigned value or the way it was made comes first`;
   if (log.modeNames.length === 0)
     return 'no fitted modes are logged, so no cause can be suggested: add columns such as mode_offset, mode_fine_scatter, mode_wavelength, mode_path';
   return 'no fitted mode moved: look at the check standard itself (air, age, evaporation), its dilution and the label';

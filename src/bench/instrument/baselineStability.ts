@@ -40,7 +40,7 @@ export function baselineStability(
 ): TestOutcome<BaselineStability> {
   const groups = [blanks, ...groupsByName(repeats)].filter((group) => group.length >= 2);
   const pieces = groups.flatMap((group) => noisePieces(group.map(({ spectrum }) => spectrum)));
-  const noise = pieces.length > 0 ? noiseLaw(pieces) : null;
+  const noise = pieces.length > 0 ? { ...noiseLaw(pieces), step: stepOf(groups[0]![0]!.spectrum) } : null;
   const shapes = blanks.map(({ spectrum }) => baselineOfScan(spectrum));
   const enough = shapes.length >= 3;
   return {
@@ -93,6 +93,10 @@ function noisePieces(spectra: readonly Spectrum[]): NoisePiece[] {
   });
 }
 
+/** nm from point to point, over the whole scan. */
+const stepOf = ({ wavelength }: Spectrum): number =>
+  (wavelength[wavelength.length - 1]! - wavelength[0]!) / (wavelength.length - 1);
+
 /** Points at the same wavelengths, with the difference of two scans and their mean. */
 function commonPoints(earlier: Spectrum, later: Spectrum) {
   const at = new Map([...earlier.wavelength].map((nm, i) => [nm, earlier.absorbance[i]!]));
@@ -119,7 +123,7 @@ function withoutBend(wavelength: Float64Array, values: Float64Array): Float64Arr
  * σ₀² and σ₁² by weighted least squares on variances (each weighted by the inverse square of its expected size, taken from a
  * first pass); a negative one is left out and the other fitted alone.
  */
-function noiseLaw(pieces: readonly NoisePiece[]): NonNullable<InstrumentRecord['noise']> {
+function noiseLaw(pieces: readonly NoisePiece[]): { constant: number; shot: number | null } {
   const brightest = Math.max(...pieces.map(({ brightness }) => brightness));
   const constantOnly = Math.sqrt(weightedMean(pieces.map((p) => [p.variance, p.degreesOfFreedom])));
   // Below A = 0.7 the two laws look alike.

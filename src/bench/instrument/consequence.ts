@@ -10,9 +10,9 @@ import { DEFAULT_CEILING } from '../../estimation/cuvette.ts';
 import { DEFAULT_MODE_PRIORS } from '../../estimation/namedModes.ts';
 import { shiftedByOneNanometre } from '../../estimation/prepare.ts';
 import { designCuvette, type PhotometerTraits } from '../planning/cuvetteDesign.ts';
-import { disturbanceEffect } from '../planning/disturbanceEffect.ts';
-import { measurementBudget } from '../planning/measurementBudget.ts';
+import { disturbanceEffect, noiseEffect } from '../planning/disturbanceEffect.ts';
 import type { MeasurementModel } from '../planning/measurementModel.ts';
+import { pointsInGrid } from '../planning/photometerTraits.ts';
 
 const TOTAL = 1.6;
 const USUAL: readonly { readonly side: Side; readonly pathLength: number }[] = [
@@ -41,7 +41,7 @@ function consequenceFor(
   const half = TOTAL / 2;
   const cuvette = { lower: half, higher: half, pathLength, pathUncertainty: 0, fillingScatter: 0 };
   const unaware: PhotometerTraits = {
-    noise: { constant: record.noise?.constant ?? 0, shot: record.noise?.shot ?? 0 },
+    noise: { constant: 0, shot: 0 },
     pointsAveraged: 1,
     strayLight: 0,
     priors: DEFAULT_MODE_PRIORS,
@@ -53,14 +53,25 @@ function consequenceFor(
     const effect = disturbanceEffect(design, half, half, shape);
     return effect ? [{ source, stateOfCharge: Math.abs(effect.share), totalVanadium: Math.abs(effect.total) }] : [];
   });
-  const noise = record.noise && measurementBudget(model, design, cuvette, 0)?.find(({ source }) => source === 'noise');
+  const noise =
+    record.noise && noiseEffect(design, half, half, photometerVariance(record.noise, absorbance, model.wavelength));
   return {
     sample: `${side}, 50 %, ${TOTAL} mol/L, ${10 * pathLength} mm`,
     lines: [
       ...lines,
-      ...(noise ? [{ source: 'noise', stateOfCharge: noise.stateOfCharge, totalVanadium: noise.totalVanadium }] : []),
+      ...(noise ? [{ source: 'noise', stateOfCharge: noise.share, totalVanadium: noise.total }] : []),
     ].sort((a, b) => b.stateOfCharge - a.stateOfCharge),
   };
+}
+
+/** Of one grid point: the mean of the native points that fall into it. */
+function photometerVariance(
+  { constant, shot, step }: NonNullable<InstrumentRecord['noise']>,
+  absorbance: Float64Array,
+  wavelength: Float64Array,
+): Float64Array {
+  const averaged = pointsInGrid(step, wavelength);
+  return absorbance.map((A) => (constant ** 2 + (shot ?? 0) ** 2 * 10 ** A) / averaged);
 }
 
 function faultsOf(

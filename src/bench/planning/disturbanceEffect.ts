@@ -5,6 +5,7 @@
 // Units       absorbance in; share of the higher species 1 and relative total out, signed.
 // Source      generalised least squares.
 import { factorInPlace, solveInPlace } from '../../numerics/smallCholesky.ts';
+import { dot } from '../../numerics/gramSchmidt.ts';
 import type { CuvetteDesign } from './cuvetteDesign.ts';
 
 /** Weights of the lower and the higher concentration in a quantity. */
@@ -36,25 +37,49 @@ export function pullsOf(design: CuvetteDesign, gradients: readonly Gradient[]): 
   });
 }
 
-/** @param disturbance absorbance on the model's wavelengths */
+/** Weight of each wavelength in an answer: change of the answer per unit of absorbance; 0 where a wavelength is not used. */
+function gainsOf(design: CuvetteDesign, pull: Float64Array): Float64Array {
+  const columns = [...design.disturbances.map(({ shape }) => shape), design.byLower, design.byHigher];
+  return design.variance.map((variance, i) => {
+    if (!design.usable[i]) return 0;
+    let sum = 0;
+    for (let p = 0; p < columns.length; p++) sum += pull[p]! * columns[p]![i]!;
+    return sum / variance;
+  });
+}
+
+export interface Effect {
+  /** of the higher species, 1 */
+  readonly share: number;
+  /** relative */
+  readonly total: number;
+}
+
+/** @param disturbance absorbance on the model's wavelengths @returns signed effect; null where the species cannot be told apart */
 export function disturbanceEffect(
   design: CuvetteDesign,
   lower: number,
   higher: number,
   disturbance: Float64Array,
-): { share: number; total: number } | null {
+): Effect | null {
   const pulls = pullsOf(design, gradientsAt(lower, higher));
   if (!pulls) return null;
-  const columns = [...design.disturbances.map(({ shape }) => shape), design.byLower, design.byHigher];
+  const [share, total] = pulls.map((pull) => dot(gainsOf(design, pull), disturbance)) as [number, number];
+  return { share, total };
+}
+
+/** @param variance of independent noise on each of the model's wavelengths @returns standard deviations */
+export function noiseEffect(
+  design: CuvetteDesign,
+  lower: number,
+  higher: number,
+  variance: Float64Array,
+): Effect | null {
+  const pulls = pullsOf(design, gradientsAt(lower, higher));
+  if (!pulls) return null;
   const [share, total] = pulls.map((pull) => {
-    let sum = 0;
-    for (let i = 0; i < disturbance.length; i++) {
-      if (!design.usable[i]) continue;
-      let gain = 0;
-      for (let p = 0; p < columns.length; p++) gain += pull[p]! * columns[p]![i]!;
-      sum += (gain * disturbance[i]!) / design.variance[i]!;
-    }
-    return sum;
+    const squares = gainsOf(design, pull).map((gain) => gain * gain);
+    return Math.sqrt(dot(squares, variance));
   }) as [number, number];
   return { share, total };
 }
