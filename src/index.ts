@@ -38,6 +38,7 @@ export { NO_FAULTS, type SimulatedFaults } from './estimation/simulateFaults.ts'
 export { compositionAt, parseComposition, sideHolding, type Composition } from './electrolyte/composition.ts';
 export { csvLine } from './report/csv.ts';
 export { spectraCsv, spectraJcamp } from './report/spectraText.ts';
+export { absorbanceFromMilliabsorbance } from './units.ts';
 export type * from './assay/instrumentRecord.ts';
 export { uncertaintyFromPrecision } from './assay/precisionRecord.ts';
 export type * from './assay/precisionRecord.ts';

@@ -1,6 +1,7 @@
 import { dirname, isAbsolute, join } from 'node:path';
 import type { Command } from 'commander';
 import {
+  absorbanceFromMilliabsorbance,
   benchReport,
   conformityPicture,
   findColumn,
@@ -14,6 +15,7 @@ import {
   DEFAULT_VERIFICATION,
   type ReadOptions,
   type SpectrumLoader,
+  type VerificationOptions,
   type VerificationScans,
 } from '../index.ts';
 import { readFileBytes, writeWhole } from '../io/files.ts';
@@ -29,6 +31,10 @@ interface VerifyOptions extends ReadOptions {
   solution?: string;
   cell?: string;
   blank?: string;
+  wavelengthLimit?: number;
+  noiseLimit?: number;
+  driftLimit?: number;
+  flatnessLimit?: number;
   calibration?: string;
   out?: string;
   report?: string;
@@ -52,12 +58,43 @@ export function register(program: Command): void {
     .option('--blank <file>', 'blank of the dichromate solution')
     .option('--name <name>', 'name of the photometer, for the record', '')
     .option('--date <date>', 'when it was checked, for the record, e.g. 2026-05-17', '')
+    .option(
+      '--wavelength-limit <nm>',
+      'permitted error of every band, e.g. "0.5 nm"',
+      limitIn('--wavelength-limit', 'nm'),
+    )
+    .option('--noise-limit <mA>', 'permitted noise of one point, e.g. "1 mA"', limitIn('--noise-limit', 'mA'))
+    .option('--drift-limit <mA>', 'permitted drift in an hour, e.g. "2 mA"', limitIn('--drift-limit', 'mA'))
+    .option(
+      '--flatness-limit <mA>',
+      'permitted departure of the baseline, e.g. "2 mA"',
+      limitIn('--flatness-limit', 'mA'),
+    )
     .option('--calibration <file>', 'what the faults mean for assays with this calibration; the shipped one without it')
     .option('--out <file>', 'write the record that later assays take with --instrument')
     .option('--report <file>', 'write text and picture as one HTML file')
     .option('--format <format>', 'text or json', 'text')
     .action((files: string[], options: VerifyOptions) => run(command, files, options));
   for (const option of readingOptions()) command.addOption(option);
+}
+
+const limitIn = (name: string, unit: string) => optionOf(name, (text, where) => parsePositive(text, unit, where));
+
+function limitsOf({
+  wavelengthLimit,
+  noiseLimit,
+  driftLimit,
+  flatnessLimit,
+}: VerifyOptions): VerificationOptions['limits'] {
+  const { limits } = DEFAULT_VERIFICATION;
+  const inAbsorbance = (milliabsorbance: number | undefined, usual: number) =>
+    milliabsorbance === undefined ? usual : absorbanceFromMilliabsorbance(milliabsorbance);
+  return {
+    wavelength: wavelengthLimit ?? limits.wavelength,
+    noise: inAbsorbance(noiseLimit, limits.noise),
+    drift: inAbsorbance(driftLimit, limits.drift),
+    flatness: inAbsorbance(flatnessLimit, limits.flatness),
+  };
 }
 
 function run(command: Command, files: string[], options: VerifyOptions): void {
@@ -72,7 +109,7 @@ function run(command: Command, files: string[], options: VerifyOptions): void {
   const { calibration } = loadCalibration(options.calibration);
   const record = verifyInstrument(
     scans,
-    { ...DEFAULT_VERIFICATION, instrument: options.name, checkedAt: options.date, assumed },
+    { instrument: options.name, checkedAt: options.date, assumed, limits: limitsOf(options) },
     calibration.pairs.map(measurementModelOf),
   );
   const json = `${JSON.stringify(record, null, 1)}\n`;

@@ -8,6 +8,7 @@
 // Source      C. R. Henderson, Biometrics 1953, 9, 226; ISO 5725-3; degrees of freedom of sums: F. E. Satterthwaite, Biometrics
 //             Bulletin 1946, 2, 110. NIST StRD checks the one-way case.
 import { TankhueError } from '../errors.ts';
+import { mean } from './meanAndDeviation.ts';
 
 export interface NestedLevel {
   readonly sumOfSquares: number;
@@ -102,14 +103,11 @@ function overlap(inner: readonly number[][], outer: readonly number[][], lines: 
 function squaresAbout(groups: readonly number[][], parents: readonly number[][], values: readonly number[]): number {
   const parentMean = new Float64Array(values.length);
   for (const parent of parents) {
-    const mean = meanOf(parent, values);
-    for (const line of parent) parentMean[line] = mean;
+    const centre = meanOf(parent, values);
+    for (const line of parent) parentMean[line] = centre;
   }
   return groups.reduce((sum, group) => sum + group.length * (meanOf(group, values) - parentMean[group[0]!]!) ** 2, 0);
 }
 
-/** Two passes: the second takes out what rounding left in the first. */
-function meanOf(lines: readonly number[], values: readonly number[]): number {
-  const first = lines.reduce((sum, line) => sum + values[line]!, 0) / lines.length;
-  return first + lines.reduce((sum, line) => sum + (values[line]! - first), 0) / lines.length;
-}
+const meanOf = (lines: readonly number[], values: readonly number[]): number =>
+  mean(lines.map((line) => values[line]!));

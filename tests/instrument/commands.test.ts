@@ -96,6 +96,11 @@ describe('tankhue verify', () => {
     expect(stdout).toMatch(/^photometer — FAILED/);
   });
 
+  test('limits can be stated, with their unit', () => {
+    expect(tankhue('verify', '--test', 'blank', files('blanks.csv'), '--noise-limit', '0.1 mA').status).toBe(4);
+    expect(tankhue('verify', '--test', 'blank', files('blanks.csv'), '--noise-limit', '0.1 nm').status).toBe(2);
+  });
+
   test('all problems of a sheet at once, status 3, nothing on stdout', () => {
     const { status, stdout, stderr } = tankhue('verify', files('broken.csv'));
     expect([status, stdout]).toEqual([3, '']);

@@ -1,6 +1,6 @@
 import { describe, expect, test } from 'vitest';
 import { bandPosition } from '../../src/bench/instrument/bandPositions.ts';
-import { verifyInstrument } from '../../src/bench/instrument/verifyInstrument.ts';
+import { DEFAULT_VERIFICATION, verifyInstrument } from '../../src/bench/instrument/verifyInstrument.ts';
 import { wavelengthScale } from '../../src/bench/instrument/wavelengthScale.ts';
 import { photometricScale } from '../../src/bench/instrument/photometricScale.ts';
 import { strayLight } from '../../src/bench/instrument/strayLight.ts';
@@ -39,6 +39,14 @@ describe('wavelength axis', () => {
     const of = (band: number) => tests.find(({ property }) => property === `${band} nm band`)!;
     expect(of(361.26)).toMatchObject({ conformity: 'failed', limits: [-1, 1] });
     expect(of(536.56)).toMatchObject({ conformity: 'passed', limits: [-3, 3] });
+  });
+
+  test("limits of one's own replace those of the pharmacopoeia, and the record says so", () => {
+    const spectrum = scan('ho', 330, 700, 0.5, holmium(0.8));
+    const limits = { ...DEFAULT_VERIFICATION.limits, wavelength: 0.5, noise: 0.0001 };
+    const record = verifyInstrument([{ test: 'holmium', spectrum }], { ...DEFAULT_VERIFICATION, limits });
+    expect(record.tests.every(({ conformity }) => conformity === 'failed')).toBe(true);
+    expect(record.tests[0]).toMatchObject({ limits: [-0.5, 0.5], limitSource: 'as asked; band positions from memory' });
   });
 
   test('a band within the guard band of its limit is undecided, not passed', () => {

@@ -31,7 +31,8 @@ export interface BaselineStability {
 }
 
 const FLATNESS_WINDOW = 10;
-const LIMIT_SOURCE = 'common practice, no source';
+const sourceOf = (limit: number, usual: number): string =>
+  limit === usual ? 'common practice, no source' : 'as asked';
 
 export function baselineStability(
   blanks: readonly BlankScan[],
@@ -177,7 +178,7 @@ function noiseTest(blanks: readonly BlankScan[], limit: number): InstrumentTest 
       value,
       // Half the 95 % interval of a standard deviation, as a standard uncertainty.
       uncertainty: (value * (Math.sqrt(freedom / chiSquareQuantile(0.025, freedom)) - 1)) / 1.96,
-      limitSource: LIMIT_SOURCE,
+      limitSource: sourceOf(limit, DEFAULT_BASELINE_LIMITS.noise),
     },
     [0, limit],
   );
@@ -206,7 +207,7 @@ function driftTest(
         unit: 'A/h',
         value: fit.coefficients[1]!,
         uncertainty: fit.standardErrors[1]!,
-        limitSource: LIMIT_SOURCE,
+        limitSource: sourceOf(limit, DEFAULT_BASELINE_LIMITS.drift),
       },
       [-limit, limit],
     ),
@@ -248,7 +249,7 @@ function flatnessTest(blanks: readonly BlankScan[], limit: number): InstrumentTe
       unit: 'A',
       value: largest,
       uncertainty,
-      limitSource: LIMIT_SOURCE,
+      limitSource: sourceOf(limit, DEFAULT_BASELINE_LIMITS.flatness),
     },
     [-limit, limit],
   );

@@ -20,11 +20,16 @@ import { scansOf, type InstrumentScan } from './scans.ts';
 import { strayLight } from './strayLight.ts';
 import { wavelengthScale } from './wavelengthScale.ts';
 
+export interface VerificationLimits extends BaselineLimits {
+  /** nm; null = those of the pharmacopoeia, 1 in the ultraviolet and 3 in the visible */
+  readonly wavelength: number | null;
+}
+
 export interface VerificationOptions {
   readonly instrument: string;
   /** ISO date, or empty */
   readonly checkedAt: string;
-  readonly baselineLimits: BaselineLimits;
+  readonly limits: VerificationLimits;
   /** what the scans' sheet left open and was taken for granted: one sentence each */
   readonly assumed: readonly string[];
 }
@@ -32,7 +37,7 @@ export interface VerificationOptions {
 export const DEFAULT_VERIFICATION: VerificationOptions = {
   instrument: '',
   checkedAt: '',
-  baselineLimits: DEFAULT_BASELINE_LIMITS,
+  limits: { ...DEFAULT_BASELINE_LIMITS, wavelength: null },
   assumed: [],
 };
 
@@ -56,8 +61,8 @@ export function verifyInstrument(
       'scans',
       'scan holmium oxide solution, repeated blanks or another of the tests',
     );
-  const wavelength = wavelengthScale(scansOf(scans, 'holmium'));
-  const baseline = baselineStability(scansOf(scans, 'blank'), scansOf(scans, 'repeat'), options.baselineLimits);
+  const wavelength = wavelengthScale(scansOf(scans, 'holmium'), options.limits.wavelength);
+  const baseline = baselineStability(scansOf(scans, 'blank'), scansOf(scans, 'repeat'), options.limits);
   const scale = photometricScale(scansOf(scans, 'dichromate-perchloric', 'dichromate-sulfuric'));
   const dark = strayLight(scansOf(scans, 'cut-off'));
   const resolution = opticalResolution(

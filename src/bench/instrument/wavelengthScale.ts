@@ -26,7 +26,11 @@ const ASSAY_FROM = 330;
 /** nm; neighbouring bands are at least 8 nm apart */
 const REACH = 4;
 
-export function wavelengthScale(scans: readonly HolmiumScan[]): TestOutcome<MeasuredProperty | null> {
+/** @param ownLimit nm; null = the pharmacopoeia's */
+export function wavelengthScale(
+  scans: readonly HolmiumScan[],
+  ownLimit: number | null = null,
+): TestOutcome<MeasuredProperty | null> {
   const seen = scans.flatMap(({ spectrum }) => bandsSeen(spectrum));
   const findings: Finding[] = scans.flatMap(({ spectrum }) => doubtsAboutScan(spectrum));
   const tests = seen.map(({ band, difference, uncertainty }): InstrumentTest =>
@@ -37,9 +41,9 @@ export function wavelengthScale(scans: readonly HolmiumScan[]): TestOutcome<Meas
         unit: 'nm',
         value: difference,
         uncertainty: Math.hypot(uncertainty, HOLMIUM_LIST_UNCERTAINTY),
-        limitSource: 'European Pharmacopoeia 2.2.25; band positions from memory',
+        limitSource: `${ownLimit === null ? 'European Pharmacopoeia 2.2.25' : 'as asked'}; band positions from memory`,
       },
-      [-permittedWavelengthError(band), permittedWavelengthError(band)],
+      [-1, 1].map((side) => side * (ownLimit ?? permittedWavelengthError(band))) as [number, number],
     ),
   );
   const inAssayRange = seen.filter(({ band }) => band >= ASSAY_FROM);
