@@ -102,6 +102,12 @@ test('one wild group is found by Cochran, one outlying mean by Grubbs; nothing i
   expect(found.quantities.stateOfCharge!.lines).toBe(12);
 });
 
+test('copied lines are not replicates', () => {
+  const copied = { ...pasteSheet, lines: pasteSheet.lines.map((_, i) => pasteSheet.lines[2 * Math.floor(i / 2)]!) };
+  expect(precisionStudy(copied).findings.map(({ code }) => code)).toContain('not-independent');
+  expect(precisionStudy(pasteSheet).findings.map(({ code }) => code)).not.toContain('not-independent');
+});
+
 test.each([
   ['one line each', [['1'], ['2'], ['3']]],
   ['no lines', []],

@@ -107,6 +107,7 @@ function studyOf(
     findings: [
       ...(merged.length > 0 ? [mergedLevels(quantity, merged)] : []),
       ...negativeComponents(quantity, components),
+      ...(repeat.sumOfSquares === 0 ? [copiedLines(quantity)] : []),
       ...suspectGroups(quantity, groups, values),
       ...fewDegrees(quantity, components),
     ],
@@ -165,6 +166,13 @@ const mergedLevels = (quantity: PrecisionQuantity, merged: readonly string[]): F
   severity: 'note',
   message: `expected several groups on each level for ${QUANTITY_IN_WORDS[quantity]}; received ${merged.join(', ')} one to one with a neighbouring level: its scatter is counted there`,
   hint: 'to see it apart, repeat inside it and outside it: two fillings a day, two scans a filling',
+});
+
+const copiedLines = (quantity: PrecisionQuantity): Finding => ({
+  code: 'not-independent',
+  severity: 'caution',
+  message: `expected repeats of ${QUANTITY_IN_WORDS[quantity]} that differ in their last digits; received the same value within every group: one assay counted twice, or rounded`,
+  hint: 'write each scan once, with all its digits',
 });
 
 function negativeComponents(quantity: PrecisionQuantity, components: readonly PrecisionComponent[]): Finding[] {
