@@ -88,3 +88,5 @@ export { readTitrations, TITRATION_RUN_COLUMNS, type CurveFile } from './io/titr
 export { readAssayNumbers } from './io/assayFile.ts';
 export { standardsRowsCsv } from './report/standardsRowsText.ts';
 export { titrationText } from './report/titrationText.ts';
+export { combineReplicates, type Replicate } from './assay/combine.ts';
+export { optionsFromInstrument } from './assay/instrumentOptions.ts';

@@ -44,7 +44,8 @@ export function errorSourcesOf(
     );
     return [a, b];
   };
-  const own = sample.name;
+  const { file, column } = sample.spectrum.origin;
+  const own = [sample.name, file, column].filter(Boolean).join('|');
   const [lower, higher] = speciesOfPair(prepared.model.pair);
   const sources: ErrorSource[] = [];
   const add = (source: string, key: string, [a, b]: Effect): void => {

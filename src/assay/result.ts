@@ -93,6 +93,8 @@ export interface AssayResult extends AssayNumbers {
   /** ≥ 1: tank over cuvette */
   dilution: number;
   input: { file: string; column: string; sha256: string };
+  /** cuvettes of one sample that this result combines; absent for a single one */
+  combinedFrom?: string[];
   /** the numbers that were withheld; absent otherwise */
   unreported?: AssayNumbers;
 }

@@ -3,6 +3,11 @@ import {
   assayCsv,
   assaySample,
   assayText,
+  combineReplicates,
+  DEFAULT_ASSAY_OPTIONS,
+  optionsFromInstrument,
+  readInstrumentRecord,
+  type AssayOptions,
   parseDilution,
   parseLength,
   parseSide,
@@ -30,6 +35,7 @@ interface AssayCliOptions extends ReadOptions {
   dilution?: number;
   temperature?: number;
   blank?: string;
+  instrument?: string;
   column: string[];
   format: 'text' | 'json' | 'ndjson' | 'csv';
 }
@@ -49,6 +55,7 @@ export function register(program: Command): void {
     .option('--dilution <factor>', 'tank over cuvette, e.g. 20', optionOf('--dilution', parseDilution))
     .option('--temperature <t>', 'of the cuvette, e.g. 25C', optionOf('--temperature', parseTemperature))
     .option('--blank <file>', 'blank to subtract')
+    .option('--instrument <file>', 'record of the photometer from tankhue verify: sets priors and ceiling')
     .option('--column <name>', 'column of the file; may be repeated; all without it', collected, [])
     .option('--format <format>', 'text, json, ndjson or csv', 'text')
     .action((files: string[], options: AssayCliOptions) => run(command, files, options));
@@ -67,15 +74,20 @@ function run(command: Command, files: string[], options: AssayCliOptions): void 
   const problems: TankhueError[] = [];
   const rows =
     options.sheet === undefined ? rowsOfFiles(files, options, shelf, problems) : rowsOfSheet(options.sheet, problems);
-  const assays = rows.flatMap((row): AssayResult[] => {
+  const assayOptions = assayOptionsOf(options.instrument);
+  const done = rows.flatMap((row): { row: SamplesRow; assay: AssayResult }[] => {
     try {
-      return [assaySample(sampleOf(row, shelf, options.sheet ?? ''), inUse)];
+      return [{ row, assay: assaySample(sampleOf(row, shelf, options.sheet ?? ''), inUse, assayOptions) }];
     } catch (error) {
       if (!(error instanceof TankhueError)) throw error;
       problems.push(error);
       return [];
     }
   });
+  const assays = [
+    ...done.map(({ assay }) => assay),
+    ...replicatesOf(done).flatMap(({ combined }) => (combined ? [combined] : [])),
+  ];
   if (assays.length > 0) process.stdout.write(formatted(documentOf(inUse, assays), options.format));
   if (assays.some((assay) => assay.state === 'withheld')) process.exitCode = 4;
   if (problems.length > 0) throw new TankhueErrors(problems as [TankhueError, ...TankhueError[]]);
@@ -143,6 +155,36 @@ function rowsOfFiles(
       note: null,
       where: `${file}, --column`,
     }));
+  });
+}
+
+/** Priors and ceiling of a checked photometer; the usual ones without a record. */
+export function assayOptionsOf(file: string | undefined): AssayOptions {
+  if (file === undefined) return DEFAULT_ASSAY_OPTIONS;
+  return optionsFromInstrument(readInstrumentRecord(new TextDecoder().decode(readFileBytes(file)), file), file);
+}
+
+export interface ReplicateGroup<Row extends SamplesRow> {
+  readonly name: string;
+  readonly members: readonly { readonly row: Row; readonly assay: AssayResult }[];
+  readonly combined: AssayResult | null;
+}
+
+/** Cuvettes whose rows name the same sample in replicate_of (or are that sample) made into one result each. */
+export function replicatesOf<Row extends SamplesRow>(
+  done: readonly { row: Row; assay: AssayResult }[],
+): ReplicateGroup<Row>[] {
+  const names = new Set(
+    done.flatMap(({ row }) => (row.replicateOf === null ? [] : [`${row.system}|${row.replicateOf}`])),
+  );
+  return [...names].map((key) => {
+    const members = done.filter(({ row }) => `${row.system}|${row.replicateOf ?? row.name}` === key);
+    const replicates = members.map(({ row, assay }) => ({
+      assay,
+      seconds: row.takenAt === null || row.scannedAt === null ? null : (row.scannedAt - row.takenAt) / 1000,
+    }));
+    const name = `${key.slice(key.indexOf('|') + 1)} (${members.length} cuvettes)`;
+    return { name, members, combined: combineReplicates(name, replicates) };
   });
 }
 

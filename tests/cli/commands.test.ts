@@ -143,7 +143,7 @@ describe('refusals', () => {
   test('one point', () => refused(assay(write('one.csv', 'nm,A\n500,0.1\n')), 'points-missing'));
   test('no numbers', () => refused(assay(write('prose.csv', 'there is\nnothing here\n')), 'no-numbers'));
   test('repeated wavelength', () =>
-    refused(assay(write('twice.csv', 'nm,A\n500,0.1\n500,0.2\n501,0.2\n')), 'axis-turns'));
+    refused(assay(write('twice.csv', 'nm,A\n500,0.1\n500,0.2\n501,0.2\n')), 'axis-repeats'));
   test('an axis that turns', () =>
     refused(assay(write('turns.csv', 'nm,A\n500,0.1\n502,0.2\n501,0.2\n503,0.1\n')), 'axis-turns'));
   test('a column that is not there', () => refused(assay(at('negative.csv'), '--column', 'nothing'), 'column-unknown'));
