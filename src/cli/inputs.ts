@@ -59,10 +59,10 @@ export class SpectraShelf {
   ): Spectrum {
     const sample = findColumn(this.file(beside(sheet, row.file)).spectra, row.column, row.where);
     if (row.blankFile === null) return sample;
-    return subtractBlank(
-      sample,
-      findColumn(this.file(beside(sheet, row.blankFile)).spectra, row.blankColumn, row.where),
-    );
+    const blank = findColumn(this.file(beside(sheet, row.blankFile)).spectra, row.blankColumn, row.where);
+    const { spectrum, lost } = subtractBlank(sample, blank);
+    if (lost > 0) this.tell(`${row.where}: ${lost} points lost where the blank ${row.blankFile} has no value`);
+    return spectrum;
   }
 }
 
