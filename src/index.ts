@@ -91,3 +91,5 @@ export { standardsRowsCsv } from './report/standardsRowsText.ts';
 export { titrationText } from './report/titrationText.ts';
 export { combineReplicates, type Replicate } from './assay/combine.ts';
 export { optionsFromInstrument } from './assay/instrumentOptions.ts';
+export { planStandards, type StandardsPlan } from './calibration/planStandards.ts';
+export { planStandardsText } from './report/planStandardsText.ts';
