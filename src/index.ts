@@ -19,7 +19,14 @@ export type * from './assay/result.ts';
 export { findColumn, parseSpectra, parseSpectraChunks } from './io/spectra.ts';
 export type { AxisUnit, Layout, OrdinateUnit, ReadOptions, Separator } from './io/readOptions.ts';
 export { understoodText, type SpectraRead, type Understood, type UnderstoodSpectrum } from './io/understood.ts';
-export { parseDilution, parseInUnits, parseLength, parsePositive, parseTemperature } from './io/quantityText.ts';
+export {
+  parseDilution,
+  parseInUnits,
+  parseLength,
+  parseOxidationState,
+  parsePositive,
+  parseTemperature,
+} from './io/quantityText.ts';
 export { readSamplesSheet, type SamplesRow } from './io/samplesSheet.ts';
 export { readStandardsSheet, type StandardsRow } from './io/standardsSheet.ts';
 export { readTanksSheet, type TanksRow } from './io/tanksSheet.ts';
@@ -93,3 +100,14 @@ export { combineReplicates, type Replicate } from './assay/combine.ts';
 export { optionsFromInstrument } from './assay/instrumentOptions.ts';
 export { planStandards, type StandardsPlan } from './calibration/planStandards.ts';
 export { planStandardsText } from './report/planStandardsText.ts';
+export { blend, type BlendTarget, type MixingBench } from './bench/mixing/blend.ts';
+export { dilutionSeries } from './bench/mixing/dilutionSeries.ts';
+export { dissolve, SOLIDS, type DissolveRequest, type Solid } from './bench/mixing/dissolve.ts';
+export { electrolyse, type ElectrolysisRequest } from './bench/mixing/electrolysis.ts';
+export type { GlassClass } from './bench/mixing/deliver.ts';
+export type * from './bench/mixing/mixResult.ts';
+export type { Stock } from './bench/mixing/stock.ts';
+export { NO_SPECTRUM, type StandardsSheetRow } from './bench/standardsRow.ts';
+export { findStock, readStocksSheet, readTargetsSheet } from './io/stocksSheet.ts';
+export { mixText } from './report/mixText.ts';
+export { DISCLAIMER } from './tanks/cautions.ts';

@@ -109,3 +109,15 @@ export function parseInUnits(
     hint,
   );
 }
+
+/** `V3` or `3.5`: a mean oxidation state of 2 to 5. @throws TankhueError `out-of-range` */
+export function parseOxidationState(text: string, where: string): number {
+  const value = Number(text.trim().replace(/^V/i, ''));
+  if (value >= 2 && value <= 5) return value;
+  throw new TankhueError(
+    'out-of-range',
+    `expected V2, V3, V4, V5 or a mean oxidation state of 2 to 5; received ${quoted(text)}`,
+    where,
+    'write V3, or 3.5 for equal parts of V(III) and V(IV)',
+  );
+}

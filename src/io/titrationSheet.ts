@@ -10,6 +10,7 @@ import type { SpectrumOrigin } from '../spectrum/spectrum.ts';
 import { kelvinFromCelsius } from '../units.ts';
 import { nearest } from './nearest.ts';
 import { readSheet, RowReader, type Sheet, type SheetRow } from './sheet.ts';
+import { spectrumOfRow, SPECTRUM_COLUMNS } from './standardsSpectrum.ts';
 
 /** What describes a run: on its first line, or in a sheet of its own with one line a run. */
 export const TITRATION_RUN_COLUMNS = [
@@ -51,13 +52,7 @@ export const TITRATION_RUN_COLUMNS = [
   'check_after_mV',
   'inert_gas',
   'preparation',
-  'spectrum_file',
-  'spectrum_column',
-  'spectrum_blank_file',
-  'spectrum_blank_column',
-  'path_mm',
-  'path_u_mm',
-  'cuvette_dilution',
+  ...SPECTRUM_COLUMNS,
   'note',
 ] as const;
 
@@ -339,15 +334,7 @@ class RunCells {
       inertGas: read.flag('inert_gas'),
       preparation: read.text('preparation') ?? sample,
       temperature: celsius === null ? null : kelvinFromCelsius(celsius),
-      spectrum: {
-        file: read.text('spectrum_file'),
-        column: read.text('spectrum_column'),
-        blankFile: read.text('spectrum_blank_file'),
-        blankColumn: read.text('spectrum_blank_column'),
-        path: read.number('path_mm', isAbove0, 'a path above 0 mm'),
-        pathUncertainty: read.number('path_u_mm', isAbove0, 'an uncertainty above 0 mm'),
-        dilution: read.number('cuvette_dilution', (d) => d >= 1, 'a dilution of 1 or more'),
-      },
+      spectrum: spectrumOfRow(read),
     };
   }
 
