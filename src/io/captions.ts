@@ -60,6 +60,8 @@ const firstKnown = <Unit>(captions: readonly string[], unitOf: (caption: string)
 export class Captions {
   readonly #rows: readonly (readonly string[])[];
   readonly #prose: readonly string[];
+  /** the only unit of values that the prose states */
+  readonly #stated: OrdinateUnit | null;
 
   /**
    * @param above the lines above the numbers, all of them
@@ -69,6 +71,8 @@ export class Captions {
     const { rows, first } = rowsAbove(above, separator, width);
     this.#rows = rows;
     this.#prose = above.slice(0, first);
+    const stated = new Set(this.#prose.map(statedOrdinateUnit).filter((unit) => unit !== null));
+    this.#stated = stated.size === 1 ? [...stated][0]! : null;
   }
 
   /** Captions of a column from top to bottom, empty ones left out. */
@@ -86,20 +90,25 @@ export class Captions {
   }
 
   ordinateUnitAlong(corner: string): OrdinateUnit | null {
-    return firstKnown([corner, ...this.#prose.slice(-MOST_ROWS)], ordinateUnitOf) ?? this.#stated();
+    return firstKnown([corner, ...this.#prose.slice(-MOST_ROWS)], ordinateUnitOf) ?? this.#stated;
   }
 
-  /** A column's caption, else the only unit that the prose states. A lone A or T counts when every column has nothing but a unit. */
-  ordinateUnit(column: number, columns: readonly number[]): OrdinateUnit | null {
-    const named = firstKnown(this.of(column), ordinateUnitOf);
-    if (named) return named;
-    const unitsThroughout = columns.every((other) => this.of(other).some(isUnitOnly));
-    return (unitsThroughout ? firstKnown(this.of(column), bareUnitOf) : null) ?? this.#stated();
+  /** True where every one of the columns has a caption that is nothing but a unit. */
+  haveUnits(columns: readonly number[]): boolean {
+    return columns.every((column) => this.of(column).some(isUnitOnly));
   }
 
-  #stated(): OrdinateUnit | null {
-    const stated = new Set(this.#prose.map(statedOrdinateUnit).filter((unit) => unit !== null));
-    return stated.size === 1 ? [...stated][0]! : null;
+  /**
+   * A column's caption, else the only unit that the prose states.
+   * @param unitsThroughout whether a lone A or T is a unit, as `haveUnits` tells; else it may be a name
+   */
+  ordinateUnit(column: number, unitsThroughout: boolean): OrdinateUnit | null {
+    const captions = this.of(column);
+    return (
+      firstKnown(captions, ordinateUnitOf) ??
+      (unitsThroughout ? firstKnown(captions, bareUnitOf) : null) ??
+      this.#stated
+    );
   }
 
   /** A column's name: its caption that is more than a unit, else its unit, else its number. */

@@ -17,12 +17,13 @@ import type { SpectraRead } from './understood.ts';
 
 /** Lines and characters that are looked at before separator, decimal mark and layout are decided. */
 const HEAD_LINES = 2000;
-const HEAD_CHARACTERS = 1 << 22;
+const HEAD_CHARACTERS = 1 << 20;
+const FEWEST_HEAD_LINES = 5;
 
 function headOf(lines: Iterator<string>): string[] {
   const head: string[] = [];
   let characters = 0;
-  while (head.length < HEAD_LINES && characters < HEAD_CHARACTERS) {
+  while (head.length < HEAD_LINES && (characters < HEAD_CHARACTERS || head.length < FEWEST_HEAD_LINES)) {
     const next = lines.next();
     if (next.done) break;
     head.push(next.value);

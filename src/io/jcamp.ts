@@ -5,7 +5,7 @@ import type { Encoding } from './decodeText.ts';
 import { jcampBlocks, jcampLabel, type JcampBlock } from './jcampBlocks.ts';
 import { jcampPoints } from './jcampTable.ts';
 import type { AxisUnit, OrdinateUnit, ReadOptions } from './readOptions.ts';
-import { spectrumFromPoints } from './spectrumFromPoints.ts';
+import { measuredAxis, measuredSpectrum } from './spectrumFromPoints.ts';
 import type { SpectraRead, UnderstoodSpectrum } from './understood.ts';
 
 // JCAMP-DX, open standard of IUPAC: McDonald, Wilks, Appl. Spectrosc. 1988, 42, 151.
@@ -65,16 +65,13 @@ function readBlock(block: JcampBlock, index: number, file: string, options: Read
     options,
     whereOfRecord(block, 'YUNITS', file),
   );
-  const read = spectrumFromPoints({
+  const whereOf = (point: number): string => `${file}:${lines[point] ?? 1}:1`;
+  const read = measuredSpectrum(measuredAxis(x, axis.unit, whereOf), {
     name,
-    axis: x,
     values: y,
-    axisUnit: axis.unit,
     unit: unit.unit,
     overRange: 0,
-    missing: y.filter(Number.isNaN).length,
     origin: { file, column: name, sha256: '' },
-    whereOf: (point) => `${file}:${lines[point] ?? 1}:1`,
   });
   return { ...read, assumed: [axis.assumed, unit.assumed] };
 }

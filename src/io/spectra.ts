@@ -31,9 +31,22 @@ export function parseSpectraChunks(
     if (next.value.trim() !== '' && !next.value.trim().startsWith('$$')) break;
   }
   const all = following(head, iterator);
-  return looksLikeJcamp(head.at(-1) ?? '')
+  const read = looksLikeJcamp(head.at(-1) ?? '')
     ? parseJcamp(all, fileName, encoding, options)
     : parseDelimited(all, fileName, encoding, options);
+  if (!read.spectra.some(hasValues)) refuseWithoutValues(read.spectra[0]!.name, fileName);
+  return read;
+}
+
+const hasValues = ({ absorbance }: Spectrum): boolean => absorbance.some((value) => !Number.isNaN(value));
+
+function refuseWithoutValues(name: string, where: string): never {
+  throw new TankhueError(
+    'no-values',
+    `expected absorbances in ${name}; received points over range, missing, or of transmittance 0 or below only`,
+    where,
+    'dilute the sample or use a thinner cell, and check that the shutter was open',
+  );
 }
 
 /** The same spectra with the hash of their file in each origin. */
@@ -56,9 +69,14 @@ export const parseSpectra = (
 
 /**
  * The spectrum of a column name; without a name the only one there is.
- * @throws TankhueError `column-unknown`, `column-unclear`
+ * @throws TankhueError `column-unknown`, `column-unclear`, `no-values`
  */
 export function findColumn(spectra: readonly Spectrum[], name: string | null, where: string): Spectrum {
+  const spectrum = columnNamed(spectra, name, where);
+  return hasValues(spectrum) ? spectrum : refuseWithoutValues(spectrum.name, where);
+}
+
+function columnNamed(spectra: readonly Spectrum[], name: string | null, where: string): Spectrum {
   const names = spectra.map((spectrum) => spectrum.name);
   if (name === null || name === '') {
     if (spectra.length === 1) return spectra[0]!;

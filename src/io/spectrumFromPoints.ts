@@ -25,30 +25,26 @@ const TO_ABSORBANCE: Readonly<Record<OrdinateUnit, (value: number) => number>> =
   T: absorbanceFromTransmittance,
 };
 
-/** Points of one spectrum as they stand in a file. */
-export interface MeasuredPoints {
-  readonly name: string;
-  /** in the file's order and `axisUnit` */
-  readonly axis: Float64Array;
-  /** in `unit`; NaN where the file has no value */
-  readonly values: Float64Array;
-  readonly axisUnit: AxisUnit;
-  readonly unit: OrdinateUnit;
-  readonly overRange: number;
-  readonly missing: number;
-  readonly origin: SpectrumOrigin;
-  /** `file:line:column` of a point */
-  readonly whereOf: (point: number) => string;
+/** An axis as it stands in a file, and as we use it. Spectra on one axis share it. */
+export interface MeasuredAxis {
+  readonly unit: AxisUnit;
+  /** the order of the file */
+  readonly direction: 'rising' | 'falling';
+  /** nm, rising */
+  readonly wavelength: Float64Array;
+  /** the file's order is the other way round than `wavelength` */
+  readonly isReversed: boolean;
+  /** nm, median distance of neighbours */
+  readonly step: number;
 }
 
-function requireOneWay(points: MeasuredPoints): 'rising' | 'falling' {
-  const { axis, axisUnit, whereOf } = points;
+function directionOf(axis: Float64Array, unit: AxisUnit, whereOf: (point: number) => string): 'rising' | 'falling' {
   const sign = Math.sign(axis[axis.length - 1]! - axis[0]!) || 1;
   for (let i = 0; i < axis.length; i++) {
     if (!(axis[i]! > 0))
       throw new TankhueError(
         'axis-value',
-        `expected an axis in ${axisUnit} above 0; received ${axis[i]}`,
+        `expected an axis in ${unit} above 0; received ${axis[i]}`,
         whereOf(i),
         'check that the first column holds the wavelengths',
       );
@@ -56,7 +52,7 @@ function requireOneWay(points: MeasuredPoints): 'rising' | 'falling' {
       const twice = axis[i] === axis[i - 1];
       throw new TankhueError(
         twice ? 'axis-repeats' : 'axis-turns',
-        `expected an axis in ${axisUnit} that only rises or only falls; received ${[...axis.subarray(Math.max(0, i - 2), i + 1)].join(', ')}`,
+        `expected an axis in ${unit} that only rises or only falls; received ${[...axis.subarray(Math.max(0, i - 2), i + 1)].join(', ')}`,
         whereOf(i),
         twice
           ? 'keep one of the points with the same wavelength'
@@ -77,54 +73,67 @@ function medianStep(wavelength: Float64Array): number {
 }
 
 /**
- * Our spectrum (nm rising, absorbance, NaN where there is no value) from points of a file.
- * @throws TankhueError `points-missing`, `axis-value`, `axis-repeats`, `axis-turns`, `no-values`
+ * @param axis in the file's order and unit
+ * @param whereOf `file:line:column` of a point
+ * @throws TankhueError `points-missing`, `axis-value`, `axis-repeats`, `axis-turns`
  */
-export function spectrumFromPoints(points: MeasuredPoints): { spectrum: Spectrum; understood: UnderstoodSpectrum } {
-  const { name, axis, values, axisUnit, unit, overRange, missing, origin } = points;
-  const count = axis.length;
-  if (count < 2)
+export function measuredAxis(axis: Float64Array, unit: AxisUnit, whereOf: (point: number) => string): MeasuredAxis {
+  if (axis.length < 2)
     throw new TankhueError(
       'points-missing',
-      `expected two points or more; received ${count}`,
-      points.whereOf(0),
+      `expected two points or more; received ${axis.length}`,
+      whereOf(0),
       'export the whole scan, not one wavelength',
     );
-  const direction = requireOneWay(points);
-  const reversed = (direction === 'falling') !== (axisUnit === 'cm-1');
-  const wavelength = new Float64Array(count);
-  const absorbance = new Float64Array(count);
-  let dark = 0;
-  let known = 0;
-  for (let i = 0; i < count; i++) {
-    const from = reversed ? count - 1 - i : i;
-    wavelength[i] = TO_NANOMETRES[axisUnit](axis[from]!);
-    absorbance[i] = TO_ABSORBANCE[unit](values[from]!);
-    if (Number.isNaN(absorbance[i])) dark += Number.isNaN(values[from]) ? 0 : 1;
-    else known++;
-  }
-  if (known === 0)
-    throw new TankhueError(
-      'no-values',
-      `expected values; received ${overRange} over range, ${missing} missing, ${dark} of transmittance 0 or below`,
-      points.whereOf(0),
-      'dilute the sample or use a thinner cell, and check that the shutter was open',
-    );
-  const spectrum = makeSpectrum(name, wavelength, absorbance, origin);
+  const direction = directionOf(axis, unit, whereOf);
+  const isReversed = (direction === 'falling') !== (unit === 'cm-1');
+  const wavelength = axis.map(TO_NANOMETRES[unit]);
+  if (isReversed) wavelength.reverse();
+  return { unit, direction, wavelength, isReversed, step: medianStep(wavelength) };
+}
+
+/** Values of one spectrum as they stand in a file. */
+export interface MeasuredValues {
+  readonly name: string;
+  /** in the file's order and `unit`; NaN where the file has none */
+  readonly values: Float64Array;
+  readonly unit: OrdinateUnit;
+  /** how many of those without a value were marked as over range */
+  readonly overRange: number;
+  readonly origin: SpectrumOrigin;
+}
+
+const countNaN = (values: Float64Array): number => {
+  let count = 0;
+  for (const value of values) if (Number.isNaN(value)) count++;
+  return count;
+};
+
+/** Our spectrum (nm rising, absorbance, NaN where there is no value) from values of a file. */
+export function measuredSpectrum(
+  axis: MeasuredAxis,
+  { name, values, unit, overRange, origin }: MeasuredValues,
+): { spectrum: Spectrum; understood: UnderstoodSpectrum } {
+  const { wavelength } = axis;
+  const absorbance = values.map(TO_ABSORBANCE[unit]);
+  if (axis.isReversed) absorbance.reverse();
+  const unknown = countNaN(values);
+  const missing = unknown - overRange;
+  const noLight = countNaN(absorbance) - unknown;
   return {
-    spectrum,
+    spectrum: makeSpectrum(name, wavelength, absorbance, origin),
     understood: {
       name,
-      points: count,
+      points: wavelength.length,
       from: wavelength[0]!,
-      to: wavelength[count - 1]!,
-      step: medianStep(wavelength),
-      direction,
-      axisUnit,
+      to: wavelength.at(-1)!,
+      step: axis.step,
+      direction: axis.direction,
+      axisUnit: axis.unit,
       unit,
       overRange,
       missing,
-      noLight: dark,
+      noLight,
     },
   };
 }

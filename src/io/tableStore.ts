@@ -47,6 +47,11 @@ export class TableStore {
     return values;
   }
 
+  isEmpty(cell: number): boolean {
+    for (let row = 0; row < this.rows; row++) if (!Number.isNaN(this.value(row, cell))) return false;
+    return this.overRangeInColumn(cell) === 0;
+  }
+
   row(row: number): Float64Array {
     const offset = (row % this.#rowsInBlock) * this.width;
     return this.#blocks[Math.floor(row / this.#rowsInBlock)]!.slice(offset, offset + this.width);

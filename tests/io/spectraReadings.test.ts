@@ -162,6 +162,11 @@ describe('several spectra', () => {
     expect(() => findColumn(spectra, null, 'samples.csv:2:4')).toThrow(
       expect.objectContaining({ code: 'column-unclear', hint: 'say which: negative, positive' }),
     );
+    const half = read('nm,dark,clear\n400,OVER,0.2\n401,OVER,0.2\n').spectra;
+    expect(findColumn(half, 'clear', 'x').absorbance[0]).toBe(0.2);
+    expect(() => findColumn(half, 'dark', 'samples.csv:2:4')).toThrow(
+      expect.objectContaining({ code: 'no-values', where: 'samples.csv:2:4' }),
+    );
     const twins = read('nm,a,a\n400,0.1,0.2\n401,0.2,0.2\n').spectra;
     expect(() => findColumn(twins, 'a', 'x')).toThrow(expect.objectContaining({ code: 'column-unclear' }));
   });
