@@ -142,7 +142,7 @@ function commandLine(sheet: string, options: CalibrateOptions): string {
   const given = [
     ...options.without.map((standard) => `--without ${standard}`),
     ...options.association.map((association) => `--association ${association.name}`),
-    ...(['from', 'to', 'step', 'ceiling', 'decimal', 'unit', 'axis'] as const)
+    ...(['from', 'to', 'step', 'ceiling', 'decimal', 'unit', 'axis', 'layout'] as const)
       .filter((key) => options[key] !== undefined)
       .map((key) => `--${key} ${options[key]}`),
   ];

@@ -5,13 +5,15 @@ import { TankhueError, type ReadOptions } from '../index.ts';
 export const readingOptions = (): Option[] => [
   new Option('--decimal <mark>', 'decimal mark of the spectra').choices(['point', 'comma']),
   new Option('--unit <unit>', 'unit of the readings').choices(['A', 'mA', '%T', 'T']),
-  new Option('--axis <unit>', 'unit of the axis').choices(['nm', 'cm-1']),
+  new Option('--axis <unit>', 'unit of the axis').choices(['nm', 'cm-1', 'um']),
+  new Option('--layout <layout>', 'where the spectra of a file lie').choices(['columns', 'pairs', 'rows']),
 ];
 
 export const readOptionsOf = (options: ReadOptions): ReadOptions => ({
   ...(options.decimal ? { decimal: options.decimal } : {}),
   ...(options.unit ? { unit: options.unit } : {}),
   ...(options.axis ? { axis: options.axis } : {}),
+  ...(options.layout ? { layout: options.layout } : {}),
 });
 
 /** A parser of option values whose refusal is wrong usage, in the grammar of the house. */

@@ -133,7 +133,7 @@ const refuseDecimal = (received: string, where: string, readings: string, alike:
     'decimal-mark',
     `expected a decimal mark that can be told from the separator; received ${quoted(received)}`,
     where,
-    `say ${readings}${alike > 0 ? `; ${alike} more lines are alike` : ''}`,
+    `say ${readings}${alike > 0 ? `; ${alike} more ${alike === 1 ? 'line is' : 'lines are'} alike` : ''}`,
   );
 
 /** True when the line above has as many captions as the block has cells, none of them a number: then commas separate. */
@@ -216,8 +216,7 @@ const axisOfRun = (run: Run): AxisRow => ({ ...run, labels: 1 });
  * @throws TankhueError `no-numbers`, `no-spectrum`, `points-missing`, `decimal-mark`, `layout`
  */
 export function findNumberBlock(lines: readonly string[], file: string, options: ReadOptions): NumberBlock {
-  const separators = options.separator ? [options.separator] : SEPARATORS;
-  const candidates = separators.map((separator): Candidate => {
+  const candidates = SEPARATORS.map((separator): Candidate => {
     const tokens = tokensOf(lines, separator);
     return { separator, tokens, run: longestRun(tokens), axis: axisRow(tokens) };
   });

@@ -6,7 +6,11 @@ const WITH_UNIT = /^\s*([+-]?(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d+)?)\s*(\S*)\s*$/;
 function split(text: string, what: string, where: string, hint: string): { value: number; unit: string } {
   const match = WITH_UNIT.exec(text);
   if (!match) throw new TankhueError('not-a-number', `expected ${what}; received ${quoted(text)}`, where, hint);
-  return { value: Number(match[1]), unit: match[2]! };
+  const value = Number(match[1]);
+  if (!Number.isFinite(value))
+    throw new TankhueError('not-a-number', `expected ${what}; received ${quoted(text)}`, where, hint);
+  // Greek mu and the micro sign look alike and come from different keyboards.
+  return { value, unit: match[2]!.replace('μ', 'µ') };
 }
 
 /** `1mm`, `0.1 cm` → cm. @throws TankhueError `unit-missing`, `unit-unknown`, `out-of-range` */
@@ -97,7 +101,7 @@ export function parseInUnits(
 ): number {
   const hint = `write for example ${example}`;
   const { value, unit } = split(text, what, where, hint);
-  const size = units[unit];
+  const size = Object.hasOwn(units, unit) ? units[unit] : undefined;
   if (size !== undefined) return value * size;
   const names = Object.keys(units).filter((name) => name !== '');
   throw new TankhueError(

@@ -1,11 +1,9 @@
 import type { DecimalMark } from './numberText.ts';
 
-export const ORDINATE_UNITS = ['A', 'mA', '%T', 'T'] as const;
 /** Decadic absorbance, a thousandth of it, transmittance in per cent, transmittance 0…1. */
-export type OrdinateUnit = (typeof ORDINATE_UNITS)[number];
+export type OrdinateUnit = 'A' | 'mA' | '%T' | 'T';
 
-export const AXIS_UNITS = ['nm', 'cm-1', 'um'] as const;
-export type AxisUnit = (typeof AXIS_UNITS)[number];
+export type AxisUnit = 'nm' | 'cm-1' | 'um';
 
 export const SEPARATORS = ['tab', 'semicolon', 'comma', 'space'] as const;
 export type Separator = (typeof SEPARATORS)[number];
@@ -15,9 +13,8 @@ export type Layout = 'columns' | 'pairs' | 'rows';
 
 /** What a person says about a file where it does not say it itself; each decides over the file. */
 export interface ReadOptions {
-  readonly decimal?: DecimalMark | undefined;
-  readonly unit?: OrdinateUnit | undefined;
-  readonly axis?: AxisUnit | undefined;
-  readonly separator?: Separator | undefined;
-  readonly layout?: Layout | undefined;
+  readonly decimal?: DecimalMark;
+  readonly unit?: OrdinateUnit;
+  readonly axis?: AxisUnit;
+  readonly layout?: Layout;
 }
