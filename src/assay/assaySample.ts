@@ -5,6 +5,7 @@ import { PAIR_OF_SIDE, speciesOfPair, type Pair } from '../electrolyte/species.t
 import { DEFAULT_CEILING } from '../estimation/cuvette.ts';
 import { fittedCurve } from '../estimation/faults.ts';
 import { DEFAULT_MODE_PRIORS } from '../estimation/namedModes.ts';
+import { newAmounts } from '../electrolyte/forwardModel.ts';
 import { dot } from '../numerics/gramSchmidt.ts';
 import { millimetresFromCentimetres } from '../units.ts';
 import { choosePair } from './choosePair.ts';
@@ -83,7 +84,7 @@ export function assaySample(
     correlation,
     errorSources: sources,
     budget,
-    fit: fitRecord(fit, options.keepCurves),
+    fit: fitRecord(fit, options.keepCurves, dilution),
     findings,
     assumed,
     pathLength,
@@ -133,7 +134,7 @@ function reported(
   return { ...numbers, concentration, totalVanadium, state, unreported: numbers };
 }
 
-function fitRecord(fit: PairFitOfSample, keepCurve: boolean): FitRecord {
+function fitRecord(fit: PairFitOfSample, keepCurve: boolean, dilution: number): FitRecord {
   const { prepared, solution, absorbance, cuvette } = fit;
   const curve = fittedCurve(prepared, solution, cuvette.pathLength);
   const residual = absorbance.map((value, l) => value - curve.total[l]!);
@@ -151,7 +152,7 @@ function fitRecord(fit: PairFitOfSample, keepCurve: boolean): FitRecord {
       unit: fault.unit,
       inPriorUnits: fault.score,
     })),
-    ...(keepCurve ? { curve: curveOf(fit, curve) } : {}),
+    ...(keepCurve ? { curve: curveOf(fit, curve), tank: tankSpectrum(fit, dilution) } : {}),
   };
 }
 
@@ -167,5 +168,21 @@ function curveOf(fit: PairFitOfSample, curve: ReturnType<typeof fittedCurve>): N
     fitted: Array.from(curve.total),
     shares: Object.fromEntries(names.map((name, k) => [name, Array.from(curve.shares[k]!)])),
     residualUncertainty: Array.from(variance, Math.sqrt),
+  };
+}
+
+/** The tank as it is: at its own concentration more of a complex is bound than in a diluted cuvette. */
+function tankSpectrum({ prepared, solution }: PairFitOfSample, dilution: number): NonNullable<FitRecord['tank']> {
+  const { model } = prepared;
+  const { amount } = prepared.amounts(
+    Math.max(0, solution.lower * dilution),
+    Math.max(0, solution.higher * dilution),
+    newAmounts(prepared.amountCount),
+  );
+  return {
+    wavelength: Array.from(model.wavelength),
+    absorbancePerCentimetre: Array.from(model.wavelength, (_, i) =>
+      model.spectra.reduce((sum, spectrum, k) => sum + amount[k]! * spectrum[i]!, 0),
+    ),
   };
 }

@@ -61,6 +61,8 @@ export interface FitRecord {
     /** standard uncertainty of one residual, absorbance */
     residualUncertainty: number[];
   };
+  /** what the undiluted electrolyte of the tank absorbs, from the fitted composition: nm, absorbance per cm; for its colour */
+  tank?: { wavelength: number[]; absorbancePerCentimetre: number[] };
 }
 
 /** The numbers of an assay, before it is decided whether they may be reported. */
