@@ -2,6 +2,7 @@ import type { BalanceDocument, SystemBalance, UnitQuantity } from '../tanks/bala
 import { AMPERE_HOURS_PER_MOLE } from '../units.ts';
 import { findingText } from './assayText.ts';
 import { percentText, quantityText, wrapped } from './quantityText.ts';
+import { standingText } from './standingText.ts';
 
 const WIDTH = 80;
 const LABEL = 24;
@@ -61,14 +62,7 @@ const amountOrReading = (quantity: UnitQuantity): string =>
 
 function numberLines(system: SystemBalance): string[] {
   const judged = system.judged!;
-  const standing = (of: 'netOxidation' | 'vanadiumShift' | 'chargeOffset'): string => {
-    const { watch, act } = judged[of];
-    if (act === 'clear') return 'clearly past the act limit';
-    if (watch === 'clear')
-      return act === 'possible' ? 'clearly past watch, may be past act' : 'clearly past the watch limit';
-    if (act === 'possible') return 'may be past the act limit';
-    return watch === 'possible' ? 'may be past the watch limit' : 'within the watch limit';
-  };
+  const standing = (of: 'netOxidation' | 'vanadiumShift' | 'chargeOffset'): string => standingText(judged[of]);
   const ampereHours = (quantity: UnitQuantity): string =>
     Math.round(quantity.value! * AMPERE_HOURS_PER_MOLE).toLocaleString('en');
   return [

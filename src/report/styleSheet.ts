@@ -13,7 +13,7 @@ h2{font-size:1.3rem;line-height:1.3;margin:2.2rem 0 .5rem;border-top:1px solid v
 h3{font-size:1.05rem;line-height:1.35;margin:0 0 .2rem}
 p{margin:.35rem 0}
 .soft{color:var(--soft)}
-.figures,td.number,th.number{font-variant-numeric:tabular-nums}
+.numbers,td.number,th.number{font-variant-numeric:tabular-nums}
 .break{overflow-wrap:anywhere}
 .badge{display:inline-block;padding:.1rem .55rem;border-radius:1rem;border:1px solid currentColor;font-weight:600;font-size:.9rem;white-space:nowrap}
 .sound{background:var(--sound-paper);color:var(--sound-ink)}
@@ -21,8 +21,10 @@ p{margin:.35rem 0}
 .withheld,.withhold{background:var(--withheld-paper);color:var(--withheld-ink)}
 .note{background:var(--raised);color:var(--soft)}
 .findings{list-style:none;margin:.6rem 0;padding:0;display:grid;gap:.45rem}
-.findings li{border-left:.35rem solid currentColor;padding:.45rem .7rem;border-radius:.2rem}
+.findings>li{border-left:.35rem solid currentColor;padding:.45rem .7rem;border-radius:.2rem}
 .findings .do{display:block;color:var(--ink)}
+.findings ul{margin:.2rem 0;padding-left:1.2rem}
+.remedies>li{margin:.5rem 0}
 .note .do{color:var(--soft)}
 code{font:.9em ui-monospace,"DejaVu Sans Mono",Menlo,Consolas,monospace}
 .answers{display:flex;flex-wrap:wrap;gap:.6rem 2rem;margin:.7rem 0;padding:0}
@@ -34,10 +36,10 @@ table{border-collapse:collapse;font-size:.92rem;margin:.4rem 0}
 caption{text-align:left;color:var(--soft);padding:.2rem 0}
 th,td{padding:.22rem .7rem .22rem 0;text-align:left;vertical-align:top;border-bottom:1px solid var(--grid)}
 th{font-weight:600}
-td.number,th.number{text-align:right}
+td.number,th.number,.numbers td,.numbers th[scope=col]:not(:first-child){text-align:right}
 .scroll{overflow-x:auto}
 .picture{margin:1.1rem 0;padding:.9rem 1rem;background:var(--raised);border:1px solid var(--grid);border-radius:.4rem;break-inside:avoid}
-.picture svg{display:block;width:100%;height:auto;max-width:50rem}
+.picture svg{display:block;width:100%;height:auto}
 .picture .drawing{overflow-x:auto}
 .picture .drawing svg{min-width:34rem}
 .picture figcaption p{margin:.1rem 0 .5rem}
@@ -64,7 +66,7 @@ svg text.middle{text-anchor:middle}
 ${['V2', 'V3', 'V4', 'V5', 'bound', 'bound-other']
   .map(
     (name) =>
-      `.fill-${name}{fill:var(--${name})}.line-${name}{stroke:var(--${name});fill:none}.tint-${name}{fill:var(--${name});fill-opacity:.28}`,
+      `.edge-${name}{stroke:var(--${name})}.line-${name}{stroke:var(--${name});fill:none}.tint-${name}{fill:var(--${name});fill-opacity:.28}`,
   )
   .join('\n')}
 @media print{

@@ -5,6 +5,8 @@ export type Scale = ScaleContinuousNumeric<number, number>;
 /** Coordinates to a tenth of a pixel: the same numbers give the same bytes. */
 export const at = (coordinate: number): number => Math.round(10 * coordinate) / 10;
 
+const tickText = (value: number): string => String(value).replace('-', '−');
+
 interface AxisProps {
   readonly scale: Scale;
   readonly label: string;
@@ -14,7 +16,7 @@ interface AxisProps {
   readonly rulesTo?: number;
 }
 
-export function HorizontalAxis({ scale, y, label, ticks, format = String, rulesTo }: AxisProps & { y: number }) {
+export function HorizontalAxis({ scale, y, label, ticks, format = tickText, rulesTo }: AxisProps & { y: number }) {
   const [left, right] = scale.range() as [number, number];
   return (
     <g>
@@ -35,7 +37,7 @@ export function HorizontalAxis({ scale, y, label, ticks, format = String, rulesT
   );
 }
 
-export function VerticalAxis({ scale, x, label, ticks, format = String, rulesTo }: AxisProps & { x: number }) {
+export function VerticalAxis({ scale, x, label, ticks, format = tickText, rulesTo }: AxisProps & { x: number }) {
   const [bottom, top] = scale.range() as [number, number];
   return (
     <g>

@@ -17,6 +17,7 @@ export interface Ladder {
 const WIDTH = 760;
 const LEFT = 30;
 const RIGHT = 730;
+const ENLARGED_END = 300;
 
 /** The lead of the positive side in points of state of charge with its expanded uncertainty (k = 2); null where a side is withheld. */
 export function leadOf({ negative, positive }: Ladder): { points: number; expanded: number } | null {
@@ -57,7 +58,7 @@ export function OxidationLadder({ id, ladder }: { id: string; ladder: Ladder }) 
       question="Which side is ahead, and by how much?"
       answer={leadSentence(ladder)}
       width={WIDTH}
-      height={208}
+      height={ENLARGED_END + 44}
       numbers={{
         columns: ['', 'mean oxidation state', 'state of charge, %'],
         rows: rows.map(([name, { value, uncertainty }]) => [
@@ -91,7 +92,56 @@ export function OxidationLadder({ id, ladder }: { id: string; ladder: Ladder }) 
       <Rung scale={scale} y={axisY - 58} quantity={mirrored} name="negative, mirrored" shape="hollow" above />
       <Rung scale={scale} y={axisY - 36} quantity={ladder.positive} name="positive" shape="filled" />
       {ladder.both && <Rung scale={scale} y={axisY - 36} quantity={ladder.both} name="both" shape="diamond" />}
+      <Enlarged ladder={ladder} />
     </Picture>
+  );
+}
+
+/** Both charges on one scale that is only as wide as needed: the lead, where the ladder itself is too coarse to show it. */
+function Enlarged({ ladder }: { ladder: Ladder }) {
+  const toCharge = ({ value, uncertainty }: Quantity, of: (value: number) => number): Quantity => ({
+    value: value === null ? null : 100 * of(value),
+    uncertainty: uncertainty === null ? null : 100 * uncertainty,
+  });
+  const sides = [
+    { name: 'negative', charge: toCharge(ladder.negative, (value) => 3 - value), y: ENLARGED_END - 58 },
+    { name: 'positive', charge: toCharge(ladder.positive, (value) => value - 4), y: ENLARGED_END - 26 },
+  ];
+  const ends = sides.flatMap(({ charge: { value, uncertainty } }) =>
+    value === null ? [] : [value - 2.5 * (uncertainty ?? 0), value + 2.5 * (uncertainty ?? 0)],
+  );
+  if (ends.length === 0) return null;
+  const middle = (Math.min(...ends) + Math.max(...ends)) / 2;
+  const reach = Math.max(2, (Math.max(...ends) - Math.min(...ends)) / 2);
+  const scale = scaleLinear([middle - reach, middle + reach], [LEFT + 110, RIGHT - 20]);
+  return (
+    <g>
+      {sides.map(({ name, charge: { value, uncertainty }, y }) => (
+        <g key={name}>
+          <text class="end strong" x={LEFT + 92} y={y + 4}>
+            {name}
+          </text>
+          {value === null ? (
+            <text class="soft" x={LEFT + 114} y={y + 4}>
+              withheld
+            </text>
+          ) : (
+            <g>
+              <path
+                class="ink-line"
+                stroke-width="2"
+                d={`M${at(scale(value - 2 * uncertainty!))} ${y}H${at(scale(value + 2 * uncertainty!))}m0 -5v10M${at(scale(value - 2 * uncertainty!))} ${y - 5}v10`}
+              />
+              <circle class="ink-fill" cx={at(scale(value))} cy={y} r={5.5} />
+              <text class="middle halo" x={at(scale(value))} y={y - 9}>
+                {`${quantityText(value, uncertainty)} %`}
+              </text>
+            </g>
+          )}
+        </g>
+      ))}
+      <HorizontalAxis scale={scale} y={ENLARGED_END} label="state of charge, %, enlarged; bars hold 95 %" />
+    </g>
   );
 }
 

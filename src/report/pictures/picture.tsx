@@ -48,11 +48,11 @@ export function Picture({ id, question, answer, width, height, numbers, children
 export function Numbers({ columns, rows }: NumbersTable) {
   return (
     <div class="scroll" tabIndex={0} role="group" aria-label="table of numbers">
-      <table>
+      <table class="numbers">
         <thead>
           <tr>
-            {columns.map((column, j) => (
-              <th scope="col" class={j > 0 ? 'number' : ''} key={column}>
+            {columns.map((column) => (
+              <th scope="col" key={column}>
                 {column}
               </th>
             ))}
@@ -63,9 +63,7 @@ export function Numbers({ columns, rows }: NumbersTable) {
             <tr key={i}>
               <th scope="row">{heading}</th>
               {cells.map((cell, j) => (
-                <td class="number" key={j}>
-                  {cell}
-                </td>
+                <td key={j}>{cell}</td>
               ))}
             </tr>
           ))}

@@ -12,8 +12,10 @@ const TOP = 30;
 const END = 250;
 const STRIP = 270;
 
-/** State of charge of many samples in the order of the document, with 95 % intervals; withheld ones in a strip of their own. */
-export function SamplesPicture({ id, assays }: { id: string; assays: readonly AssayResult[] }) {
+/** State of charge of many samples in the order of the document, with 95 % intervals; withheld ones in a strip of their own. Composites have none. */
+export function SamplesPicture({ id, assays: all }: { id: string; assays: readonly AssayResult[] }) {
+  const assays = all.filter(({ side }) => side !== 'composite');
+  if (assays.length === 0) return null;
   const x = scaleLinear([0, assays.length - 1], [LEFT + 12, RIGHT - 12]);
   const intervals = assays.flatMap(({ stateOfCharge }) => stateOfCharge.interval ?? []).map((share) => 100 * share);
   const y = scaleLinear([Math.min(0, ...intervals), Math.max(100, ...intervals)], [END, TOP]);
@@ -22,7 +24,7 @@ export function SamplesPicture({ id, assays }: { id: string; assays: readonly As
     <Picture
       id={id}
       question="What charge does each sample hold, and which can be trusted?"
-      answer={`Of ${assays.length} samples ${count('sound')} are sound, ${count('caution')} to be used with caution and ${count('withheld')} withheld.`}
+      answer={`Of ${assays.length} samples of the two sides ${count('sound')} are sound, ${count('caution')} are to be used with caution and ${count('withheld')} were withheld.`}
       width={WIDTH}
       height={312}
       numbers={{
@@ -40,8 +42,7 @@ export function SamplesPicture({ id, assays }: { id: string; assays: readonly As
         <Mark key={i} assay={assay} x={at(x(assays.length === 1 ? 0.5 : i))} y={(share) => at(y(100 * share))} />
       ))}
       <text class="soft" x={LEFT} y={STRIP + 30}>
-        ● negative, sound ○ negative, caution ■ positive, sound □ positive, caution × withheld; in the order of the
-        sheet
+        ● negative, sound ○ negative, caution ■ positive, sound □ positive, caution × withheld
       </text>
     </Picture>
   );

@@ -1,5 +1,5 @@
 import { scaleLinear } from 'd3-scale';
-import { area, line, stack, stackOffsetDiverging } from 'd3-shape';
+import { area, line, stack } from 'd3-shape';
 import type { AssayResult, FitRecord } from '../../assay/result.ts';
 import { absorberName, pathText } from '../words.ts';
 import { at, HorizontalAxis, VerticalAxis, type Scale } from './axes.tsx';
@@ -15,6 +15,10 @@ const TOP = 26;
 const CURVES_END = 270;
 const RESIDUAL_TOP = 306;
 const RESIDUAL_END = 386;
+/** All of them lie in the record; a table of every reading would be most of the file */
+const MOST_ROWS = 40;
+const LABEL_ROOM = 55;
+const MOST_MARKS = 60;
 
 /** Measured and fitted spectrum with each absorber's share, and below it the residual in units of its own uncertainty. */
 export function SpectrumPicture({ id, assay }: { id: string; assay: AssayResult }) {
@@ -34,8 +38,7 @@ export function SpectrumPicture({ id, assay }: { id: string; assay: AssayResult 
   const r = scaleLinear([-reach, reach], [RESIDUAL_END, RESIDUAL_TOP]);
   const layers = stack<number, string>()
     .keys(names)
-    .value((i, name) => curve.shares[name]![i]!)
-    .offset(stackOffsetDiverging)(Array.from(curve.wavelength.keys()));
+    .value((i, name) => curve.shares[name]![i]!)(Array.from(curve.wavelength.keys()));
   return (
     <Picture
       id={id}
@@ -45,7 +48,7 @@ export function SpectrumPicture({ id, assay }: { id: string; assay: AssayResult 
       height={430}
       numbers={{
         columns: ['wavelength, nm', 'measured', 'fitted', ...names.map(absorberName), 'residual, in its uncertainty'],
-        rows: everyFew(curve.wavelength).map((i) => [
+        rows: everyFew(curve.wavelength, MOST_ROWS).map((i) => [
           String(curve.wavelength[i]),
           curve.measured[i]?.toFixed(4) ?? '–',
           curve.fitted[i]!.toFixed(4),
@@ -63,7 +66,7 @@ export function SpectrumPicture({ id, assay }: { id: string; assay: AssayResult 
             <path
               key={run[0]}
               fill={`url(#${id}-${drawn[k]!.colour})`}
-              class={`line-${drawn[k]!.colour}`}
+              class={`edge-${drawn[k]!.colour}`}
               stroke-width="0.8"
               d={
                 area<number>()
@@ -90,8 +93,8 @@ export function SpectrumPicture({ id, assay }: { id: string; assay: AssayResult 
         />
       ))}
       <g class="ink-line raised-fill" stroke-width="1">
-        {everyFew(curve.wavelength, 60).map((i) =>
-          curve.measured[i] == null ? null : (
+        {everyFew(curve.wavelength, MOST_MARKS).map((i) =>
+          curve.measured[i] === null ? null : (
             <circle key={i} cx={at(x(curve.wavelength[i]!))} cy={at(y(curve.measured[i]!))} r="2.3" />
           ),
         )}
@@ -145,7 +148,7 @@ function fitSentence({ findings, fit }: AssayResult, residuals: readonly (number
   const far = residuals.filter((value) => value !== null && Math.abs(value) > 2).length;
   const poor = findings.find((finding) => finding.code === 'poor-match');
   const verdict = poor ? (poor.severity === 'withhold' ? 'No' : 'Not fully') : 'Yes';
-  return `${verdict}: ${far} of ${residuals.length} wavelengths miss by more than twice their uncertainty; ${(1000 * fit!.residualRms).toPrecision(2)} mA is left on average (root mean square).`;
+  return `${verdict}: ${far} of ${residuals.length} wavelengths miss by more than twice their uncertainty; ${fit!.residualRms.toPrecision(2)} of absorbance is left on average (root mean square).`;
 }
 
 /** Indices of wavelengths that follow each other without a gap. */
@@ -190,7 +193,7 @@ function Unused({ id, runs, wavelength, x }: UnusedProps) {
 }
 
 /** Rows of a table or marks of a drawing: all of them up to `most`, else every n-th. */
-function everyFew(wavelength: readonly number[], most = 120): number[] {
+function everyFew(wavelength: readonly number[], most: number): number[] {
   const every = Math.ceil(wavelength.length / most);
   return [...wavelength.keys()].filter((i) => i % every === 0);
 }
@@ -203,10 +206,12 @@ function labelPlaces(
   wavelength: readonly number[],
 ): { name: string; left: number; top: number }[] {
   return layers.flatMap((layer) => {
-    const thickness = layer.map((pair) => Math.abs(y(pair[1]!) - y(pair[0]!)));
+    const thickness = layer.map((pair, i) => {
+      const left = x(wavelength[i]!);
+      return left < LEFT + LABEL_ROOM || left > RIGHT - LABEL_ROOM ? 0 : Math.abs(y(pair[1]!) - y(pair[0]!));
+    });
     const i = thickness.indexOf(Math.max(...thickness));
     if (thickness[i]! < 9) return [];
-    const left = Math.min(RIGHT - 40, Math.max(LEFT + 40, x(wavelength[i]!)));
-    return [{ name: layer.key, left, top: (y(layer[i]![0]!) + y(layer[i]![1]!)) / 2 + 4 }];
+    return [{ name: layer.key, left: x(wavelength[i]!), top: (y(layer[i]![0]!) + y(layer[i]![1]!)) / 2 + 4 }];
   });
 }
