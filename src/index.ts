@@ -111,3 +111,16 @@ export { NO_SPECTRUM, type StandardsSheetRow } from './bench/standardsRow.ts';
 export { findStock, readStocksSheet, readTargetsSheet } from './io/stocksSheet.ts';
 export { mixText } from './report/mixText.ts';
 export { DISCLAIMER } from './tanks/cautions.ts';
+export { assayReport, balanceReport, calibrationReport } from './report/makeReport.ts';
+export { readBack } from './report/readBack.ts';
+export { ladderText } from './report/ladderText.ts';
+export { readAssayDocument } from './io/resultFile.ts';
+export {
+  assayDocumentOf,
+  assayRows,
+  balanceDocumentOf,
+  withReplicatesCombined,
+  type Cuvette,
+} from './io/sheetResults.ts';
+export { colourThrough, type SeenColour } from './electrolyte/colour.ts';
+export { colourDifference } from './electrolyte/colourDifference.ts';

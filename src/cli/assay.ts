@@ -1,30 +1,31 @@
 import type { Command } from 'commander';
 import {
   assayCsv,
-  assaySample,
+  assayDocumentOf,
+  assayReport,
+  assayRows,
   assayText,
-  combineReplicates,
   DEFAULT_ASSAY_OPTIONS,
   optionsFromInstrument,
-  readInstrumentRecord,
-  type AssayOptions,
   parseDilution,
   parseLength,
   parseSide,
   parseTemperature,
+  readAssayDocument,
+  readBack,
+  readInstrumentRecord,
   readSamplesSheet,
   TankhueError,
   TankhueErrors,
   type AssayDocument,
-  type AssayResult,
-  type CalibrationInUse,
+  type AssayOptions,
   type ReadOptions,
-  type Sample,
   type SamplesRow,
   type Side,
 } from '../index.ts';
-import { readFileBytes } from '../io/files.ts';
+import { readFileBytes, requireWritable } from '../io/files.ts';
 import { loadCalibration, SpectraShelf } from './inputs.ts';
+import { MADE_BY, writeReport } from './reportFile.ts';
 import { collected, optionOf, readingOptions, readOptionsOf, tell } from './options.ts';
 
 interface AssayCliOptions extends ReadOptions {
@@ -38,6 +39,8 @@ interface AssayCliOptions extends ReadOptions {
   instrument?: string;
   column: string[];
   format: 'text' | 'json' | 'ndjson' | 'csv';
+  report?: string;
+  from?: string;
 }
 
 export function register(program: Command): void {
@@ -58,13 +61,17 @@ export function register(program: Command): void {
     .option('--instrument <file>', 'record of the photometer from tankhue verify: sets priors and ceiling')
     .option('--column <name>', 'column of the file; may be repeated; all without it', collected, [])
     .option('--format <format>', 'text, json, ndjson or csv', 'text')
+    .option('--report <file>', 'also write a report: one HTML file that carries its record')
+    .option('--from <report>', 'read the record of such a report instead of spectra')
     .action((files: string[], options: AssayCliOptions) => run(command, files, options));
   for (const option of readingOptions()) command.addOption(option);
 }
 
-function run(command: Command, files: string[], options: AssayCliOptions): void {
+async function run(command: Command, files: string[], options: AssayCliOptions): Promise<void> {
   if (!['text', 'json', 'ndjson', 'csv'].includes(options.format))
     command.error(`expected --format text, json, ndjson or csv; received ${options.format}`);
+  if (options.report !== undefined) requireWritable(options.report, [...files, ...inputsOf(options)]);
+  if (options.from !== undefined) return readReport(command, files, options);
   if ((options.sheet === undefined) === (files.length === 0))
     command.error('expected files of spectra, or --sheet SAMPLES.csv');
   if (options.sheet === undefined && options.side === undefined)
@@ -74,30 +81,35 @@ function run(command: Command, files: string[], options: AssayCliOptions): void 
   const problems: TankhueError[] = [];
   const rows =
     options.sheet === undefined ? rowsOfFiles(files, options, shelf, problems) : rowsOfSheet(options.sheet, problems);
-  const assayOptions = assayOptionsOf(options.instrument);
-  const done = rows.flatMap((row): { row: SamplesRow; assay: AssayResult }[] => {
-    try {
-      return [{ row, assay: assaySample(sampleOf(row, shelf, options.sheet ?? ''), inUse, assayOptions) }];
-    } catch (error) {
-      if (!(error instanceof TankhueError)) throw error;
-      problems.push(error);
-      return [];
-    }
-  });
-  const assays = [
-    ...done.map(({ assay }) => assay),
-    ...replicatesOf(done).flatMap(({ combined }) => (combined ? [combined] : [])),
-  ];
-  if (assays.length > 0) process.stdout.write(formatted(documentOf(inUse, assays), options.format));
-  if (assays.some((assay) => assay.state === 'withheld')) process.exitCode = 4;
+  const { cuvettes, problems: unread } = assayRows(
+    rows,
+    (row) => shelf.spectrum(options.sheet ?? '', row),
+    inUse,
+    assayOptionsOf(options.instrument),
+  );
+  problems.push(...unread);
+  const document = assayDocumentOf(inUse, cuvettes);
+  if (document.assays.length > 0) await print(document, options, [...inputsOf(options), ...shelf.paths]);
   if (problems.length > 0) throw new TankhueErrors(problems as [TankhueError, ...TankhueError[]]);
 }
 
-export const documentOf = (inUse: CalibrationInUse, assays: AssayResult[]): AssayDocument => ({
-  schema: 'tankhue/assay/1',
-  calibration: { name: inUse.calibration.name, sha256: inUse.sha256 },
-  assays,
-});
+/** Reads the record of an earlier report instead of spectra. */
+async function readReport(command: Command, files: readonly string[], options: AssayCliOptions): Promise<void> {
+  const from = options.from!;
+  if (files.length > 0 || options.sheet !== undefined)
+    command.error('expected --from REPORT.html alone; received spectra or a sheet beside it');
+  const text = await readBack(new TextDecoder().decode(readFileBytes(from)), from);
+  await print(readAssayDocument(text, from), options, [from]);
+}
+
+async function print(document: AssayDocument, options: AssayCliOptions, inputs: readonly string[]): Promise<void> {
+  process.stdout.write(formatted(document, options.format));
+  if (options.report !== undefined) await writeReport(options.report, () => assayReport(document, MADE_BY), inputs);
+  if (document.assays.some((assay) => assay.state === 'withheld')) process.exitCode = 4;
+}
+
+const inputsOf = (options: AssayCliOptions): string[] =>
+  [options.sheet, options.calibration, options.instrument, options.blank].filter((file) => file !== undefined);
 
 function formatted(document: AssayDocument, format: AssayCliOptions['format']): string {
   if (format === 'text') return assayText(document);
@@ -162,34 +174,4 @@ function rowsOfFiles(
 export function assayOptionsOf(file: string | undefined): AssayOptions {
   if (file === undefined) return DEFAULT_ASSAY_OPTIONS;
   return optionsFromInstrument(readInstrumentRecord(new TextDecoder().decode(readFileBytes(file)), file), file);
-}
-
-export interface ReplicateGroup<Row extends SamplesRow> {
-  readonly name: string;
-  readonly members: readonly { readonly row: Row; readonly assay: AssayResult }[];
-  readonly combined: AssayResult | null;
-}
-
-/** Cuvettes whose rows name the same sample in replicate_of (or are that sample) made into one result each. */
-export function replicatesOf<Row extends SamplesRow>(
-  done: readonly { row: Row; assay: AssayResult }[],
-): ReplicateGroup<Row>[] {
-  const names = new Set(
-    done.flatMap(({ row }) => (row.replicateOf === null ? [] : [`${row.system}|${row.replicateOf}`])),
-  );
-  return [...names].map((key) => {
-    const members = done.filter(({ row }) => `${row.system}|${row.replicateOf ?? row.name}` === key);
-    const replicates = members.map(({ row, assay }) => ({
-      assay,
-      seconds: row.takenAt === null || row.scannedAt === null ? null : (row.scannedAt - row.takenAt) / 1000,
-    }));
-    const name = `${key.slice(key.indexOf('|') + 1)} (${members.length} cuvettes)`;
-    return { name, members, combined: combineReplicates(name, replicates) };
-  });
-}
-
-/** A row and its spectrum as the engine takes it. */
-export function sampleOf(row: SamplesRow, shelf: SpectraShelf, sheet: string): Sample {
-  const missing = row.blankExpected ? ('missing' as const) : ('instrument' as const);
-  return { ...row, spectrum: shelf.spectrum(sheet, row), blank: row.blankFile === null ? missing : 'given' };
 }

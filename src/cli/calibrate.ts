@@ -1,6 +1,7 @@
 import type { Command } from 'commander';
 import {
   calibrate,
+  calibrationReport,
   calibrationText,
   parseAssociation,
   parseCalibration,
@@ -17,6 +18,7 @@ import { readFileBytes, requireWritable, sha256Of, writeWhole } from '../io/file
 import { SpectraShelf } from './inputs.ts';
 import { collected, optionOf, readingOptions, readOptionsOf, tell } from './options.ts';
 import { progressOn } from './progress.ts';
+import { MADE_BY, writeReport } from './reportFile.ts';
 import { parsePositive } from '../index.ts';
 
 interface CalibrateOptions extends ReadOptions {
@@ -30,6 +32,7 @@ interface CalibrateOptions extends ReadOptions {
   step?: number;
   ceiling?: number;
   inspect?: string;
+  report?: string;
   format: 'text' | 'json';
 }
 
@@ -59,20 +62,27 @@ export function register(program: Command): void {
       'absorbance above which points are not used',
       optionOf('--ceiling', (text, where) => parsePositive(text, 'A', where)),
     )
+    .option('--report <file>', 'also write a report: one HTML file that carries the calibration')
     .option('--format <format>', 'text or json on stdout', 'text')
     .action((standards: string | undefined, options: CalibrateOptions) => run(command, standards, options));
   for (const option of readingOptions()) command.addOption(option);
 }
 
-function run(command: Command, sheet: string | undefined, options: CalibrateOptions): void {
+async function run(command: Command, sheet: string | undefined, options: CalibrateOptions): Promise<void> {
   if (options.inspect !== undefined) {
     const text = new TextDecoder().decode(readFileBytes(options.inspect));
-    process.stdout.write(calibrationText(parseCalibration(text, options.inspect)));
+    const calibration = parseCalibration(text, options.inspect);
+    process.stdout.write(calibrationText(calibration));
+    if (options.report !== undefined)
+      await writeReport(options.report, () => calibrationReport(calibration, sha256Of(text), MADE_BY), [
+        options.inspect,
+      ]);
     return;
   }
   if (sheet === undefined || options.out === undefined)
     command.error('expected a sheet of standards and --out FILE.json (or --inspect FILE)');
   requireWritable(options.out, [sheet]);
+  if (options.report !== undefined) requireWritable(options.report, [sheet, options.out]);
   const bytes = readFileBytes(sheet);
   const { rows, unknownColumns } = readStandardsSheet(bytes, sheet);
   if (unknownColumns.length > 0) tell(`${sheet}: columns kept but not used: ${unknownColumns.join(', ')}`);
@@ -102,6 +112,12 @@ function run(command: Command, sheet: string | undefined, options: CalibrateOpti
   const file = serialiseCalibration(calibration);
   writeWhole(options.out, file, [sheet, ...shelf.paths]);
   process.stdout.write(options.format === 'json' ? file : calibrationText(calibration));
+  if (options.report !== undefined)
+    await writeReport(options.report, () => calibrationReport(calibration, sha256Of(file), MADE_BY), [
+      sheet,
+      options.out,
+      ...shelf.paths,
+    ]);
   tell(`written: ${options.out} (${Math.round(file.length / 1024)} kB, sha256 ${sha256Of(file).slice(0, 12)})`);
 }
 
