@@ -124,3 +124,5 @@ export {
 } from './io/sheetResults.ts';
 export { colourThrough, type SeenColour } from './electrolyte/colour.ts';
 export { colourDifference } from './electrolyte/colourDifference.ts';
+export { extensionFindings, requireOldStandards } from './calibration/extend.ts';
+export { transferCalibration, type Transfer } from './calibration/transfer.ts';

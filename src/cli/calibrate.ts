@@ -5,21 +5,26 @@ import {
   calibrationText,
   parseAssociation,
   parseCalibration,
+  parsePositive,
   readStandardsSheet,
+  extensionFindings,
+  requireOldStandards,
   serialiseCalibration,
+  transferCalibration,
   TankhueError,
   TankhueErrors,
   VERSION,
   type Association,
+  type Calibration,
   type ReadOptions,
   type Standard,
+  type StandardsRow,
 } from '../index.ts';
 import { readFileBytes, requireWritable, sha256Of, writeWhole } from '../io/files.ts';
 import { SpectraShelf } from './inputs.ts';
 import { collected, optionOf, readingOptions, readOptionsOf, tell } from './options.ts';
 import { progressOn } from './progress.ts';
 import { MADE_BY, writeReport } from './reportFile.ts';
-import { parsePositive } from '../index.ts';
 
 interface CalibrateOptions extends ReadOptions {
   out?: string;
@@ -33,6 +38,8 @@ interface CalibrateOptions extends ReadOptions {
   ceiling?: number;
   inspect?: string;
   report?: string;
+  extend?: string;
+  transfer?: string;
   format: 'text' | 'json';
 }
 
@@ -42,9 +49,14 @@ export function register(program: Command): void {
   const command = program
     .command('calibrate')
     .description('standards of known composition → a calibration file with its validation')
-    .argument('[standards]', 'sheet of standards (CSV)')
+    .argument('[standards...]', 'sheets of standards (CSV)')
     .option('--out <file>', 'calibration file to write (JSON)')
     .option('--inspect <file>', 'explain a calibration file instead of making one')
+    .option(
+      '--extend <file>',
+      'calibration that old and new standards together replace; its own standards must be among the sheets',
+    )
+    .option('--transfer <file>', 'calibration of another photometer to carry over by the few standards of the sheet')
     .option('--name <text>', 'name of the calibration')
     .option('--source <text>', 'where the standards came from, for the record', '')
     .option('--without <standard>', 'leave a standard out by decision; may be repeated', collected, [])
@@ -64,11 +76,11 @@ export function register(program: Command): void {
     )
     .option('--report <file>', 'also write a report: one HTML file that carries the calibration')
     .option('--format <format>', 'text or json on stdout', 'text')
-    .action((standards: string | undefined, options: CalibrateOptions) => run(command, standards, options));
+    .action((standards: string[], options: CalibrateOptions) => run(command, standards, options));
   for (const option of readingOptions()) command.addOption(option);
 }
 
-async function run(command: Command, sheet: string | undefined, options: CalibrateOptions): Promise<void> {
+async function run(command: Command, sheets: readonly string[], options: CalibrateOptions): Promise<void> {
   if (options.inspect !== undefined) {
     const text = new TextDecoder().decode(readFileBytes(options.inspect));
     const calibration = parseCalibration(text, options.inspect);
@@ -79,15 +91,54 @@ async function run(command: Command, sheet: string | undefined, options: Calibra
       ]);
     return;
   }
-  if (sheet === undefined || options.out === undefined)
+  if (sheets.length === 0 || options.out === undefined)
     command.error('expected a sheet of standards and --out FILE.json (or --inspect FILE)');
-  requireWritable(options.out, [sheet]);
-  if (options.report !== undefined) requireWritable(options.report, [sheet, options.out]);
+  requireWritable(options.out, sheets);
+  if (options.report !== undefined) requireWritable(options.report, [...sheets, options.out]);
+  const shelf = new SpectraShelf(readOptionsOf(options), tell);
+  const read = sheets.map((sheet) => readSheetOf(sheet, shelf));
+  const standards = read.flatMap((one) => one.standards);
+  const calibration =
+    options.transfer === undefined
+      ? calibrated(sheets, read, standards, options)
+      : transferCalibration(calibrationIn(options.transfer), standards).calibration;
+  const file = serialiseCalibration(calibration);
+  writeWhole(options.out, file, [
+    ...sheets,
+    ...shelf.paths,
+    ...[options.extend, options.transfer].filter((path) => path !== undefined),
+  ]);
+  process.stdout.write(options.format === 'json' ? file : calibrationText(calibration));
+  if (options.report !== undefined)
+    await writeReport(options.report, () => calibrationReport(calibration, sha256Of(file), MADE_BY), [
+      ...sheets,
+      options.out,
+      ...shelf.paths,
+    ]);
+  tell(`written: ${options.out} (${Math.round(file.length / 1024)} kB, sha256 ${sha256Of(file).slice(0, 12)})`);
+}
+
+const calibrationIn = (path: string): Calibration =>
+  parseCalibration(new TextDecoder().decode(readFileBytes(path)), path);
+
+function readSheetOf(
+  sheet: string,
+  shelf: SpectraShelf,
+): { bytes: Uint8Array; rows: StandardsRow[]; standards: Standard[] } {
   const bytes = readFileBytes(sheet);
   const { rows, unknownColumns } = readStandardsSheet(bytes, sheet);
   if (unknownColumns.length > 0) tell(`${sheet}: columns kept but not used: ${unknownColumns.join(', ')}`);
-  const shelf = new SpectraShelf(readOptionsOf(options), tell);
-  const standards = withSpectra(sheet, rows, shelf);
+  return { bytes, rows, standards: withSpectra(sheet, rows, shelf) };
+}
+
+function calibrated(
+  sheets: readonly string[],
+  read: readonly { bytes: Uint8Array; rows: StandardsRow[] }[],
+  standards: Standard[],
+  options: CalibrateOptions,
+): Calibration {
+  const old = options.extend === undefined ? null : calibrationIn(options.extend);
+  if (old) requireOldStandards(old, standards);
   const bar = progressOn(process.stderr);
   const grid = {
     ...(options.from === undefined ? {} : { from: options.from }),
@@ -96,37 +147,31 @@ async function run(command: Command, sheet: string | undefined, options: Calibra
   };
   const calibration = calibrate(
     {
-      name: options.name ?? sheet.replace(/^.*[\\/]/, '').replace(/\.[^.]*$/, ''),
+      name: options.name ?? sheets[0]!.replace(/^.*[\\/]/, '').replace(/\.[^.]*$/, ''),
       source: options.source,
       standards,
       without: options.without,
       associations: options.association,
       grid,
       ...(options.ceiling === undefined ? {} : { ceiling: options.ceiling }),
-      matrix: matrixOf(rows),
-      provenance: { tool: `tankhue ${VERSION}`, command: commandLine(sheet, options), sheetSha256: sha256Of(bytes) },
+      matrix: matrixOf(read.flatMap((one) => one.rows)),
+      provenance: {
+        tool: `tankhue ${VERSION}`,
+        command: commandLine(sheets, options),
+        sheetSha256:
+          read.length === 1 ? sha256Of(read[0]!.bytes) : sha256Of(read.map((one) => sha256Of(one.bytes)).join('\n')),
+      },
     },
     (pair, done) => bar.show(pair, done),
   );
   bar.stop();
-  const file = serialiseCalibration(calibration);
-  writeWhole(options.out, file, [sheet, ...shelf.paths]);
-  process.stdout.write(options.format === 'json' ? file : calibrationText(calibration));
-  if (options.report !== undefined)
-    await writeReport(options.report, () => calibrationReport(calibration, sha256Of(file), MADE_BY), [
-      sheet,
-      options.out,
-      ...shelf.paths,
-    ]);
-  tell(`written: ${options.out} (${Math.round(file.length / 1024)} kB, sha256 ${sha256Of(file).slice(0, 12)})`);
+  return old
+    ? { ...calibration, findings: [...calibration.findings, ...extensionFindings(old, calibration)] }
+    : calibration;
 }
 
 /** All files that cannot be read are shown at once. */
-function withSpectra(
-  sheet: string,
-  rows: ReturnType<typeof readStandardsSheet>['rows'],
-  shelf: SpectraShelf,
-): Standard[] {
+function withSpectra(sheet: string, rows: readonly StandardsRow[], shelf: SpectraShelf): Standard[] {
   const problems: TankhueError[] = [];
   const standards = rows.flatMap((row): Standard[] => {
     try {
@@ -141,7 +186,7 @@ function withSpectra(
   return standards;
 }
 
-function matrixOf(rows: ReturnType<typeof readStandardsSheet>['rows']): {
+function matrixOf(rows: readonly StandardsRow[]): {
   temperature: number | null;
   acid: number | null;
 } {
@@ -153,8 +198,8 @@ function matrixOf(rows: ReturnType<typeof readStandardsSheet>['rows']): {
 }
 
 /** The options that matter for the result, without paths of this machine: the same command gives the same bytes. */
-function commandLine(sheet: string, options: CalibrateOptions): string {
-  const name = sheet.replace(/^.*[\\/]/, '');
+function commandLine(sheets: readonly string[], options: CalibrateOptions): string {
+  const names = sheets.map((sheet) => sheet.replace(/^.*[\\/]/, ''));
   const given = [
     ...options.without.map((standard) => `--without ${standard}`),
     ...options.association.map((association) => `--association ${association.name}`),
@@ -162,5 +207,5 @@ function commandLine(sheet: string, options: CalibrateOptions): string {
       .filter((key) => options[key] !== undefined)
       .map((key) => `--${key} ${options[key]}`),
   ];
-  return ['tankhue calibrate', name, ...given].join(' ');
+  return ['tankhue calibrate', ...names, ...given].join(' ');
 }
