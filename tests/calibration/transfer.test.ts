@@ -6,8 +6,10 @@ import { speciesOfPair } from '../../src/electrolyte/species.ts';
 import { makeSpectrum } from '../../src/spectrum/spectrum.ts';
 import {
   absorbanceOf,
+  assayInvented,
   chance,
   inventedCalibration,
+  inventedSample,
   inventedStandards,
   PATH,
   WAVELENGTH,
