@@ -24,21 +24,22 @@ const HEAD_BYTES = 65536;
 const startsWith = (bytes: Uint8Array, signature: readonly number[]): boolean =>
   signature.every((byte, i) => bytes[i] === byte);
 
-/** Every other byte of UTF-16 is 0 as long as the text is mostly Latin letters and digits. */
-function unmarkedUtf16(bytes: Uint8Array): Encoding | null {
-  const units = Math.min(bytes.length, 4096) >> 1;
-  let low = 0;
-  let high = 0;
-  for (let i = 0; i < units; i++) {
-    if (bytes[2 * i] === 0) low++;
-    if (bytes[2 * i + 1] === 0) high++;
-  }
-  if (high > 0.4 * units && low === 0) return 'UTF-16LE';
-  return low > 0.4 * units && high === 0 ? 'UTF-16BE' : null;
-}
-
 /** No text has these: control characters other than tab, line ends, form feed, escape and the end-of-file mark of old systems. */
 const isControl = (byte: number): boolean => byte < 32 && ![9, 10, 12, 13, 26, 27].includes(byte);
+
+/** Every other byte of UTF-16 is 0 as long as the text is mostly Latin letters and digits; the bytes between are text. */
+function isUnmarkedUtf16(bytes: Uint8Array, high: 0 | 1): boolean {
+  const units = Math.min(bytes.length, 4096) >> 1;
+  let latin = 0;
+  for (let i = 0; i < units; i++) {
+    const low = bytes[2 * i + 1 - high]!;
+    if (bytes[2 * i + high] !== 0) {
+      if (low === 0) return false;
+    } else if (isControl(low)) return false;
+    else latin++;
+  }
+  return latin > 0.4 * units;
+}
 
 function isUtf8(head: Uint8Array): boolean {
   try {
@@ -64,8 +65,8 @@ export function encodingOf(bytes: Uint8Array, fileName: string): Encoding {
       throw new TankhueError('binary', `expected text; received ${what}`, fileName, hint);
   if (startsWith(head, [0xff, 0xfe])) return 'UTF-16LE';
   if (startsWith(head, [0xfe, 0xff])) return 'UTF-16BE';
-  const unmarked = unmarkedUtf16(head);
-  if (unmarked) return unmarked;
+  if (isUnmarkedUtf16(head, 1)) return 'UTF-16LE';
+  if (isUnmarkedUtf16(head, 0)) return 'UTF-16BE';
   const control = head.findIndex(isControl);
   if (control >= 0)
     throw new TankhueError(

@@ -101,6 +101,11 @@ function axisRow(tokens: readonly Tokens[]): AxisRow | null {
   return null;
 }
 
+const SIGNS: Readonly<Record<Separator, RegExp>> = { tab: /\t/, semicolon: /;/, comma: /,/, space: /\S\s+\S/ };
+
+const mayBeSplitBy = (lines: readonly string[], separator: Separator): boolean =>
+  lines.some((line) => SIGNS[separator].test(line));
+
 interface Candidate {
   readonly separator: Separator;
   readonly tokens: readonly Tokens[];
@@ -128,13 +133,28 @@ function refuseNoNumbers(lines: readonly string[], file: string): never {
   );
 }
 
-const refuseDecimal = (received: string, where: string, readings: string, alike: number): TankhueError =>
-  new TankhueError(
+interface DecimalDecision {
+  readonly decimal: DecimalMark;
+  readonly commaBoth: boolean;
+}
+
+/** Cells of the block, and where it begins. */
+interface Block {
+  readonly rows: readonly (readonly string[])[];
+  readonly text: string;
+  readonly where: string;
+}
+
+function refuseDecimal({ rows, text, where }: Block, hint: string): never {
+  const alike = rows.length - 1;
+  const counted = alike === 0 ? '' : `; ${alike} more ${alike === 1 ? 'line is' : 'lines are'} alike`;
+  throw new TankhueError(
     'decimal-mark',
-    `expected a decimal mark that can be told from the separator; received ${quoted(received)}`,
+    `expected a decimal mark that can be told from the separator; received ${quoted(text)}`,
     where,
-    `say ${readings}${alike > 0 ? `; ${alike} more ${alike === 1 ? 'line is' : 'lines are'} alike` : ''}`,
+    hint + counted,
   );
+}
 
 /** True when the line above has as many captions as the block has cells, none of them a number: then commas separate. */
 function captionsConfirm(tokens: readonly Tokens[], run: Run): boolean {
@@ -142,49 +162,49 @@ function captionsConfirm(tokens: readonly Tokens[], run: Run): boolean {
   return above !== undefined && above.cells.length === run.cells && above.kinds.every((kind) => kind === 'text');
 }
 
+/** Whole numbers between commas: 400,5,0,123 may as well be 400.5 and 0.123. */
+function decideWholeNumbers(block: Block, isConfirmed: boolean, asked: DecimalMark | undefined): DecimalDecision {
+  const cells = block.rows[0]!;
+  const inPairs = cells.length % 2 === 0;
+  if (asked === 'point' || (asked === undefined && isConfirmed)) return { decimal: 'point', commaBoth: false };
+  if (asked === 'comma' && inPairs) return { decimal: 'comma', commaBoth: true };
+  const joined = Array.from({ length: cells.length / 2 }, (_, i) => `${cells[2 * i]}.${cells[2 * i + 1]}`);
+  const asPoint = `--decimal point (${cells.join(' and ')})`;
+  return refuseDecimal(
+    block,
+    inPairs
+      ? `say --decimal comma (${joined.join(' and ')}) or ${asPoint}`
+      : `say ${asPoint}, or export with a semicolon or tab between columns`,
+  );
+}
+
+/** @param isConfirmed something beside the cells themselves says that commas separate them */
 function decideDecimal(
-  candidate: Candidate,
+  { separator, tokens }: Candidate,
   run: Run,
+  isConfirmed: boolean,
   lines: readonly string[],
   file: string,
   asked: DecimalMark | undefined,
-): { decimal: DecimalMark; commaBoth: boolean } {
-  const { separator, tokens } = candidate;
-  const inBlock = tokens.slice(run.first).filter((token) => token.cells.length === run.cells);
-  const evidence = decimalEvidence(inBlock.flatMap((token) => token.cells));
-  const where = `${file}:${run.first + 1}:1`;
-  const line = lines[run.first]!.trim();
-  const first = inBlock[0]!.cells;
-  if (separator === 'comma' && evidence === 'none') {
-    if (asked === 'point' || (asked === undefined && captionsConfirm(tokens, run)))
-      return { decimal: 'point', commaBoth: false };
-    const paired = first.length % 2 === 0;
-    if (asked === 'comma' && paired) return { decimal: 'comma', commaBoth: true };
-    const joined = Array.from({ length: first.length / 2 }, (_, i) => `${first[2 * i]}.${first[2 * i + 1]}`);
-    const readings = paired
-      ? `--decimal comma (${joined.join(' and ')}) or --decimal point (${first.join(' and ')})`
-      : `--decimal point (${first.join(' and ')}), or export with a semicolon or tab between columns`;
-    throw refuseDecimal(line, where, readings, run.length - 1);
-  }
+): DecimalDecision {
+  const rows = tokens
+    .slice(run.first)
+    .map((token) => token.cells)
+    .filter((cells) => cells.length === run.cells);
+  const block = { rows, text: lines[run.first]!.trim(), where: `${file}:${run.first + 1}:1` };
+  const evidence = decimalEvidence(rows);
+  if (separator === 'comma' && evidence === 'none') return decideWholeNumbers(block, isConfirmed, asked);
   if (asked) return { decimal: asked, commaBoth: false };
   if (evidence === 'grouped') {
-    const cell = inBlock.flatMap((token) => token.cells).find((text) => /\d,\d{3}/.test(text))!;
-    throw refuseDecimal(
-      line,
-      where,
-      `--decimal comma (${cell.replace(',', '.')}), or export without thousands marks if it is ${cell.replace(/,/g, '')}`,
-      run.length - 1,
+    const cell = rows.flat().find((text) => /\d,\d{3}/.test(text))!;
+    const whole = cell.replace(/,/g, '');
+    refuseDecimal(
+      block,
+      `say --decimal comma (${cell.replace(',', '.')}), or export without thousands marks if it is ${whole}`,
     );
   }
-  if (evidence === 'both') {
-    const mixed = inBlock.findIndex((token) => decimalEvidence(token.cells) === 'both');
-    throw refuseDecimal(
-      inBlock[Math.max(mixed, 0)]!.cells.join(' '),
-      where,
-      '--decimal comma or --decimal point after exporting with one mark throughout: both stand in this table',
-      0,
-    );
-  }
+  if (evidence === 'both')
+    refuseDecimal(block, 'export with one decimal mark throughout: a point and a comma both stand in this table');
   return { decimal: evidence === 'comma' ? 'comma' : 'point', commaBoth: false };
 }
 
@@ -216,22 +236,31 @@ const axisOfRun = (run: Run): AxisRow => ({ ...run, labels: 1 });
  * @throws TankhueError `no-numbers`, `no-spectrum`, `points-missing`, `decimal-mark`, `layout`
  */
 export function findNumberBlock(lines: readonly string[], file: string, options: ReadOptions): NumberBlock {
-  const candidates = SEPARATORS.map((separator): Candidate => {
+  const candidates = SEPARATORS.filter((separator) => mayBeSplitBy(lines, separator)).map((separator): Candidate => {
     const tokens = tokensOf(lines, separator);
     return { separator, tokens, run: longestRun(tokens), axis: axisRow(tokens) };
   });
+  if (candidates.length === 0) refuseNoNumbers(lines, file);
   const best = candidates.reduce((a, b) => (weightOf(b) > weightOf(a) ? b : a));
   const { run, axis, separator } = best;
   if (!run && !axis) refuseNoNumbers(lines, file);
   const orientation = orientationOf(best, file, options);
   if (orientation === 'rows') {
     const rows = axis ?? axisOfRun(run!);
-    const { decimal, commaBoth } = decideDecimal(best, rows, lines, file, options.decimal);
+    // An axis along the first line rises cell by cell, which parts of numbers would not.
+    const { decimal, commaBoth } = decideDecimal(best, rows, true, lines, file, options.decimal);
     if (commaBoth || rows.length < 1) refuseNoNumbers(lines, file);
     return { separator, decimal, commaBoth, orientation, first: rows.first, cells: rows.cells, labels: rows.labels };
   }
   if (!run) refuseNoNumbers(lines, file);
-  const { decimal, commaBoth } = decideDecimal(best, run, lines, file, options.decimal);
+  const { decimal, commaBoth } = decideDecimal(
+    best,
+    run,
+    captionsConfirm(best.tokens, run),
+    lines,
+    file,
+    options.decimal,
+  );
   return {
     separator,
     decimal,

@@ -31,17 +31,18 @@ export function numberFromText(text: string, decimal: DecimalMark): number {
  */
 export type DecimalEvidence = DecimalMark | 'none' | 'grouped' | 'both';
 
-export function decimalEvidence(cells: Iterable<string>): DecimalEvidence {
+export function decimalEvidence(rows: Iterable<readonly string[]>): DecimalEvidence {
   let point = false;
   let comma = false;
   let grouped = false;
-  for (const cell of cells) {
-    if (!NUMBER.test(cell)) continue;
-    if (cell.includes('.')) point = true;
-    else if (isDecimalComma(cell)) comma = true;
-    else if (cell.includes(',')) grouped = true;
-    if (point && (comma || grouped)) return 'both';
-  }
+  for (const cells of rows)
+    for (const cell of cells) {
+      if (!NUMBER.test(cell)) continue;
+      if (cell.includes('.')) point = true;
+      else if (isDecimalComma(cell)) comma = true;
+      else if (cell.includes(',')) grouped = true;
+      if (point && (comma || grouped)) return 'both';
+    }
   if (comma) return 'comma';
   if (point) return 'point';
   return grouped ? 'grouped' : 'none';

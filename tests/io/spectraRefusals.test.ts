@@ -91,7 +91,7 @@ describe('what can be read in two ways is refused with both and the option that 
       's.csv:1:1',
       [/--decimal comma \(1\.100\)/, /1100/],
     ],
-    ['both marks', '400.5\t0,1\n401.5\t0,2\n', 'decimal-mark', 's.csv:1:1', [/one mark throughout/]],
+    ['both marks', '400.5\t0,1\n401.5\t0,2\n', 'decimal-mark', 's.csv:1:1', [/one decimal mark throughout/]],
     [
       '%T or mA',
       '400 97.5\n401 98.5\n',
