@@ -5,7 +5,8 @@
 // Units       those of y over those of the column.
 // Source      any text on linear models; NIST StRD checks it.
 import { TankhueError } from '../errors.ts';
-import { dot, thinQrOfRows } from './gramSchmidt.ts';
+import { dot, thinQrOfRows, type ThinQr } from './gramSchmidt.ts';
+import { invertUpper } from './triangle.ts';
 
 export interface LinearFit {
   readonly coefficients: Float64Array;
@@ -29,31 +30,9 @@ export function fitLinear(columns: readonly Float64Array[], y: Float64Array): Li
       'fit',
       'measure more points',
     );
-  const { q, r, dependent } = thinQrOfRows(columns);
-  if (dependent.length > 0)
-    throw new TankhueError(
-      'columns-dependent',
-      `expected independent columns; received ${dependent.length} that the others make up`,
-      'fit',
-      'leave out a column, or vary it',
-    );
-  const inverse = invertUpper(r, count);
-  const projections = q.map((row) => dot(row, y));
-  const coefficients = new Float64Array(count);
-  for (let i = 0; i < count; i++)
-    for (let j = i; j < count; j++) coefficients[i]! += inverse[i * count + j]! * projections[j]!;
-  let residualSumOfSquares = 0;
-  for (let l = 0; l < y.length; l++) {
-    let residual = y[l]!;
-    for (let j = 0; j < count; j++) residual -= projections[j]! * q[j]![l]!;
-    residualSumOfSquares += residual * residual;
-  }
+  const { coefficients, unscaledCovariance, residuals } = fitByQr(thinQrOfRows(columns), y);
+  const residualSumOfSquares = dot(residuals, residuals);
   const variance = residualSumOfSquares / degreesOfFreedom;
-  const unscaledCovariance = new Float64Array(count * count);
-  for (let i = 0; i < count; i++)
-    for (let j = 0; j < count; j++)
-      for (let k = Math.max(i, j); k < count; k++)
-        unscaledCovariance[i * count + j]! += inverse[i * count + k]! * inverse[j * count + k]!;
   const covariance = unscaledCovariance.map((value) => variance * value);
   return {
     coefficients,
@@ -65,16 +44,32 @@ export function fitLinear(columns: readonly Float64Array[], y: Float64Array): Li
   };
 }
 
-/** Inverse of a row-major upper triangle. */
-function invertUpper(r: Float64Array, count: number): Float64Array {
-  const inverse = new Float64Array(count * count);
-  for (let j = 0; j < count; j++) {
-    inverse[j * count + j] = 1 / r[j * count + j]!;
-    for (let i = j - 1; i >= 0; i--) {
-      let sum = 0;
-      for (let k = i + 1; k <= j; k++) sum += r[i * count + k]! * inverse[k * count + j]!;
-      inverse[i * count + j] = -sum / r[i * count + i]!;
-    }
-  }
-  return inverse;
+/** @throws TankhueError `columns-dependent` */
+export function fitByQr(
+  { q, r, dependent }: ThinQr,
+  y: Float64Array,
+): { coefficients: Float64Array; unscaledCovariance: Float64Array; residuals: Float64Array } {
+  if (dependent.length > 0) throw columnsDependent(dependent.length);
+  const count = q.length;
+  const inverse = invertUpper(r, count);
+  const projections = q.map((row) => dot(row, y));
+  const coefficients = new Float64Array(count);
+  for (let i = 0; i < count; i++)
+    for (let j = i; j < count; j++) coefficients[i]! += inverse[i * count + j]! * projections[j]!;
+  const residuals = Float64Array.from(y);
+  for (let j = 0; j < count; j++) for (let l = 0; l < y.length; l++) residuals[l]! -= projections[j]! * q[j]![l]!;
+  const unscaledCovariance = new Float64Array(count * count);
+  for (let i = 0; i < count; i++)
+    for (let j = 0; j < count; j++)
+      for (let k = Math.max(i, j); k < count; k++)
+        unscaledCovariance[i * count + j]! += inverse[i * count + k]! * inverse[j * count + k]!;
+  return { coefficients, unscaledCovariance, residuals };
 }
+
+export const columnsDependent = (count: number): TankhueError =>
+  new TankhueError(
+    'columns-dependent',
+    `expected independent columns; received ${count} that the others make up`,
+    'fit',
+    'leave out a column, or vary it',
+  );

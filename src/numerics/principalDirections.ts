@@ -1,5 +1,5 @@
-import { EVD, Matrix } from 'ml-matrix';
 import { dot } from './gramSchmidt.ts';
+import { symmetricEigen } from './matrix.ts';
 
 /**
  * Principal directions of residual rows, largest first, each scaled to one standard deviation on `freedom` degrees of freedom:
@@ -7,29 +7,18 @@ import { dot } from './gramSchmidt.ts';
  * wavelengths costs nothing.
  */
 export function principalDirections(rows: readonly Float64Array[], freedom: number, count: number): Float64Array[] {
-  const m = rows.length;
-  const gram = new Matrix(m, m);
-  for (let i = 0; i < m; i++)
-    for (let j = 0; j <= i; j++) {
-      const value = dot(rows[i]!, rows[j]!);
-      gram.set(i, j, value);
-      gram.set(j, i, value);
-    }
-  const decomposition = new EVD(gram, { assumeSymmetric: true });
-  const vectors = decomposition.eigenvectorMatrix;
-  const order = decomposition.realEigenvalues
-    .map((value, index) => ({ value, index }))
-    .sort((a, b) => b.value - a.value)
-    .slice(0, count);
-  const largest = order[0]?.value ?? 0;
-  return order
-    .filter(({ value }) => value > 1e-12 * largest && value > 0)
-    .map(({ index }) => {
+  if (rows.length === 0) return [];
+  const { values, vectors } = symmetricEigen(rows.map((a) => rows.map((b) => dot(a, b))));
+  const largest = values[0]!;
+  return values
+    .slice(0, count)
+    .filter((value) => value > 1e-12 * largest && value > 0)
+    .map((_, k) => {
       const direction = new Float64Array(rows[0]!.length);
-      for (let i = 0; i < m; i++) {
-        const weight = vectors.get(i, index) / Math.sqrt(freedom);
-        for (let l = 0; l < direction.length; l++) direction[l]! += weight * rows[i]![l]!;
-      }
+      rows.forEach((row, i) => {
+        const weight = vectors[k]![i]! / Math.sqrt(freedom);
+        for (let l = 0; l < direction.length; l++) direction[l]! += weight * row[l]!;
+      });
       return direction;
     });
 }

@@ -1,5 +1,6 @@
 import { uniformFloat64 } from 'pure-rand/distribution/uniformFloat64';
 import { xoroshiro128plus } from 'pure-rand/generator/xoroshiro128plus';
+import { TankhueError } from '../errors.ts';
 
 /** A repeatable source of chance: the only one in the house, always passed in, never hidden. */
 export interface Random {
@@ -9,14 +10,24 @@ export interface Random {
   normal(): number;
 }
 
+export interface SeededRandom extends Random {
+  /**
+   * A source of its own for each label (a whole number), the same whatever was drawn before: work that is split or done in another order
+   * gives the same numbers.
+   */
+  fork(label: number): SeededRandom;
+}
+
 /** Draws thrown away first: generators of neighbouring seeds start alike. */
 const WARM_UP = 32;
 
 /**
  * xoroshiro128+ of pure-rand (period 2¹²⁸ − 1); normal deviates by the polar method (Marsaglia, Bray, SIAM Rev. 1964, 6, 260).
- * @param seed a whole number; the same seed gives the same numbers on every machine
+ * @param seed a whole number of 32 bits; the same seed gives the same numbers on every machine
+ * @throws TankhueError `seed-not-whole`: the library would cut 1.5 to 1 and 2³² + 1 to 1 in silence
  */
-export function seededRandom(seed: number): Random {
+export function seededRandom(seed: number): SeededRandom {
+  expectWhole(seed, 'seed');
   const generator = xoroshiro128plus(seed);
   for (let i = 0; i < WARM_UP; i++) generator.next();
   const uniform = (): number => uniformFloat64(generator);
@@ -39,5 +50,27 @@ export function seededRandom(seed: number): Random {
         return x * factor;
       }
     },
+    fork: (label) => {
+      expectWhole(label, 'label');
+      return seededRandom(scrambled(Math.imul(scrambled(seed), 31) ^ scrambled(label ^ 0x9e3779b9)));
+    },
   };
+}
+
+/** Finaliser of MurmurHash3 (A. Appleby, public domain): every bit in moves every bit out. */
+function scrambled(value: number): number {
+  let h = value;
+  h = Math.imul(h ^ (h >>> 16), 0x85ebca6b);
+  h = Math.imul(h ^ (h >>> 13), 0xc2b2ae35);
+  return h ^ (h >>> 16);
+}
+
+function expectWhole(value: number, where: string): void {
+  if (!(Number.isInteger(value) && value >= -(2 ** 31) && value < 2 ** 32))
+    throw new TankhueError(
+      'seed-not-whole',
+      `expected a whole number from −2147483648 to 4294967295; received ${value}`,
+      where,
+      'write a whole number, for example 1',
+    );
 }

@@ -1,7 +1,7 @@
 import { expect, test } from 'vitest';
 import { gaussLegendre } from '../../src/numerics/gaussLegendre.ts';
 import { fitLinear } from '../../src/numerics/linearFit.ts';
-import { solveSquare } from '../../src/numerics/solveSquare.ts';
+import { solveSquare } from '../../src/numerics/matrix.ts';
 
 // M. Abramowitz, I. A. Stegun, Handbook of Mathematical Functions, table 25.4, n = 3: 0.774596669241483, 5/9 and 8/9.
 test('Gauss-Legendre nodes of order 3', () => {

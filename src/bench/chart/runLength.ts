@@ -11,7 +11,7 @@
 //             C. W. Champ, W. H. Woodall, Technometrics 1987, 29, 393 (run rules).
 import { normalCdf } from '../../numerics/distributions.ts';
 import { gaussLegendre } from '../../numerics/gaussLegendre.ts';
-import { solveSquare } from '../../numerics/solveSquare.ts';
+import { solveSquare } from '../../numerics/matrix.ts';
 import type { CumulativeSumDesign } from './cumulativeSum.ts';
 import { movingAverageLimit, type MovingAverageDesign } from './movingAverage.ts';
 import type { RunRule } from './runRules.ts';
