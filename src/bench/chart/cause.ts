@@ -40,6 +40,7 @@ export function movedModes(
   baseline: readonly CheckPoint[],
   alarm: readonly CheckPoint[],
 ): MovedMode[] {
+  if (modeNames.length === 0) return [];
   const limit = normalQuantile(1 - 0.01 / (2 * modeNames.length));
   return modeNames
     .flatMap((mode) => {
