@@ -1,5 +1,5 @@
 // What        The end points of one curve with all that speaks for and against them.
-// Equation    combined: fitBranches. Student's t for its interval. A method is apart by (v_method − v)/u_method.
+// Equation    combined: fitBranches. Student's t for its interval. A method is apart by (v_method − v)/√(u²_method + u²_burette).
 // Why so      the methods are listed beside their combination, so that a person sees whether they tell one story.
 // Valid for   curves that reach past the last step that is needed; what does not is withheld, never extrapolated.
 // Units       mL, mV.
@@ -52,7 +52,7 @@ export function endPointsOf(run: TitrationRun, course: Course): EndPointsOfRun {
     return { volumes: null, covariance: new Float64Array(), degreesOfFreedom: 1, result: record([], null) };
   }
   const fit = fitBranches(run.curve, course, jumps, run.cell);
-  const endPoints = course.steps.map((step, j) => endPointOf(step, j, course, fit, jumps[j]!));
+  const endPoints = course.steps.map((step, j) => endPointOf(step, j, course, fit, jumps[j]!, run.buretteUncertainty));
   findings.push(
     ...spacingFindings(endPoints, jumps, run),
     ...disagreementFindings(endPoints),
@@ -81,7 +81,7 @@ export function measuredVolumes(run: TitrationRun, { volumes, covariance }: EndP
   );
 }
 
-function endPointOf(step: string, j: number, course: Course, fit: BranchFit, jump: Jump): EndPoint {
+function endPointOf(step: string, j: number, course: Course, fit: BranchFit, jump: Jump, burette: number): EndPoint {
   const volume = fit.endPoints[j]!;
   const uncertainty = Math.sqrt(fit.covariance[j * fit.endPoints.length + j]!);
   const reach = studentQuantile(0.975, fit.degreesOfFreedom) * uncertainty;
@@ -95,14 +95,14 @@ function endPointOf(step: string, j: number, course: Course, fit: BranchFit, jum
         jump.volume - 0.95 * Math.sqrt(3) * jump.uncertainty,
         jump.volume + 0.95 * Math.sqrt(3) * jump.uncertainty,
       ],
-      apart: (jump.volume - volume) / jump.uncertainty,
+      apart: (jump.volume - volume) / Math.hypot(jump.uncertainty, burette),
     },
     ...zerosOf(course, fit.gran, j).map(({ side, zero }): EndPointByMethod => ({
       method: side === 'before' ? 'Gran, before' : 'Gran, after',
       volume: zero.volume,
       uncertainty: zero.uncertainty,
       interval: zero.interval && [zero.interval[0], zero.interval[1]],
-      apart: (zero.volume - volume) / zero.uncertainty,
+      apart: (zero.volume - volume) / Math.hypot(zero.uncertainty, burette),
     })),
   ];
   return { step, volume, uncertainty, interval: [volume - reach, volume + reach], potential: jump.potential, methods };
@@ -157,7 +157,7 @@ function disagreementFindings(endPoints: readonly EndPoint[]): Finding[] {
       {
         code: 'end-points-disagree',
         severity: 'caution',
-        message: `${step}: ${worst.method} says ${worst.volume.toFixed(3)} mL, all together ${volume.toFixed(3)} mL, ${Math.abs(worst.apart).toFixed(1)} of its uncertainties apart`,
+        message: `${step}: ${worst.method} says ${worst.volume.toFixed(3)} mL, all together ${volume.toFixed(3)} mL, ${Math.abs(worst.apart).toFixed(1)} times their uncertainty apart`,
         hint: 'wait for steady readings, and titrate again with smaller additions',
       },
     ];

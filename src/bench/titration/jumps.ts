@@ -3,7 +3,7 @@
 // Why so      A jump is told from noise by how far its slope stands above the flattest stretch on both sides (its prominence), which needs no
 //             knowledge of the chemistry. The window is the spacing of the readings, wider only where their scatter would show in d.
 //             Between two readings that straddle a sharp jump nothing is known of the place but the interval: u = width/√12,
-//             the width at half height where the jump is blunt, because it need not be symmetric.
+//             and half the width at half height where the jump is blunt, because its inflection need not be the end point.
 // Valid for   curves with a few readings on each side of every jump.
 // Units       mL, mV.
 // Source      second-difference rule of analytical textbooks; rectangular distribution: JCGM 100, 4.3.7.
@@ -22,6 +22,8 @@ export interface Jump {
 
 /** Slope above that of the flatter side by this factor makes a jump. [practice] */
 const PROMINENCE = 4;
+/** A jump that is this much wider at half height than its steepest interval is blunt. */
+const BLUNT = 1.5;
 /** Window as share of the volume delivered. */
 const WINDOW = 0.012;
 
@@ -83,10 +85,11 @@ function locate(rising: TitrationCurve, near: number, noise: number, window: num
   const steep = (at(rising, right) - at(rising, left)) / width;
   const rise = (steep - (at(rising, left) - at(rising, before)) / (left - before)) / ((right - before) / 2);
   const fall = ((at(rising, after) - at(rising, right)) / (after - right) - steep) / ((after - left) / 2);
+  const blunt = halfHeightWidth(rising, left, right, steep);
   const share = rise > 0 && fall < 0 ? rise / (rise - fall) : 0.5;
   return {
     volume: left + width * share,
-    uncertainty: Math.max(width, halfHeightWidth(rising, left, right, steep)) / Math.sqrt(12),
+    uncertainty: Math.max(width / Math.sqrt(12), blunt > BLUNT * width ? blunt / 2 : 0),
     interval: [left, right],
     potential: (direction * (at(rising, left) + at(rising, right))) / 2,
   };

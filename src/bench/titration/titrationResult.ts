@@ -13,7 +13,7 @@ export interface EndPointByMethod {
   volume: number;
   uncertainty: number;
   interval: Interval | null;
-  /** difference from the combined end point, in its own uncertainties; near 0 where they agree */
+  /** difference from the combined end point over its own uncertainty and the burette's; near 0 where they agree */
   apart: number;
 }
 
