@@ -121,14 +121,25 @@ function rangesOf(run: string, readings: readonly Reading[]): TankhueError[] {
   return problems;
 }
 
-/** mV scatter of single readings: median of the departures from the line through the neighbours, as a standard deviation. */
+/** mV scatter of single readings: median of the departures from the cubic through two neighbours on each side, as a standard deviation. */
 export function potentialNoise({ volume, potential }: TitrationCurve): number {
   const departures: number[] = [];
-  for (let i = 1; i + 1 < volume.length; i++) {
-    const share = (volume[i]! - volume[i - 1]!) / (volume[i + 1]! - volume[i - 1]!);
-    const expected = (1 - share) * potential[i - 1]! + share * potential[i + 1]!;
-    departures.push(Math.abs(potential[i]! - expected) / Math.sqrt(1 + (1 - share) ** 2 + share ** 2));
+  for (let i = 2; i + 2 < volume.length; i++) {
+    const neighbours = [i - 2, i - 1, i + 1, i + 2];
+    let departure = potential[i]!;
+    let square = 1;
+    for (const j of neighbours) {
+      // Lagrange's weight of neighbour j at reading i
+      const weight = neighbours.reduce(
+        (product, k) => (k === j ? product : (product * (volume[i]! - volume[k]!)) / (volume[j]! - volume[k]!)),
+        1,
+      );
+      departure -= weight * potential[j]!;
+      square += weight * weight;
+    }
+    departures.push(Math.abs(departure) / Math.sqrt(square));
   }
   departures.sort((a, b) => a - b);
+  // 1.4826 makes the median of a normal distribution its standard deviation
   return 1.4826 * (departures[Math.floor(departures.length / 2)] ?? 0);
 }

@@ -3,7 +3,7 @@
 // Why so      A jump is told from noise by how far its slope stands above the flattest stretch on both sides (its prominence), which needs no
 //             knowledge of the chemistry. The window is the spacing of the readings, wider only where their scatter would show in d.
 //             Between two readings that straddle a sharp jump nothing is known of the place but the interval: u = width/√12,
-//             and half the width at half height where the jump is blunt, because its inflection need not be the end point.
+//             and the whole width at half height where the jump is blunt, because its inflection need not be the end point.
 // Valid for   curves with a few readings on each side of every jump.
 // Units       mL, mV.
 // Source      second-difference rule of analytical textbooks; rectangular distribution: JCGM 100, 4.3.7.
@@ -76,8 +76,8 @@ function locate(rising: TitrationCurve, near: number, noise: number, window: num
   for (let i = 0; i + 1 < volume.length; i++)
     if (Math.abs((volume[i]! + volume[i + 1]!) / 2 - near) <= window && (top < 0 || slope(i) > slope(top))) top = i;
   const gap = volume[top + 1]! - volume[top]!;
-  // Scatter below 2 % of the slope: else the window is widened, on equidistant interpolated points.
-  const width = Math.max(gap, (Math.SQRT2 * noise) / (0.02 * Math.max(slope(top), 1e-9)));
+  // Scatter below 5 % of the slope: else the window is widened, on equidistant interpolated points.
+  const width = Math.max(gap, (Math.SQRT2 * noise) / (0.05 * Math.max(slope(top), 1e-9)));
   const left = width > gap ? near - width / 2 : volume[top]!;
   const right = left + width;
   const before = width > gap ? left - width : (volume[top - 1] ?? left - width);
@@ -89,7 +89,7 @@ function locate(rising: TitrationCurve, near: number, noise: number, window: num
   const share = rise > 0 && fall < 0 ? rise / (rise - fall) : 0.5;
   return {
     volume: left + width * share,
-    uncertainty: Math.max(width / Math.sqrt(12), blunt > BLUNT * width ? blunt / 2 : 0),
+    uncertainty: Math.max(width / Math.sqrt(12), blunt > BLUNT * width ? blunt : 0),
     interval: [left, right],
     potential: (direction * (at(rising, left) + at(rising, right))) / 2,
   };
