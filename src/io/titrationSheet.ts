@@ -256,8 +256,10 @@ class RunCells {
       this.read.text('standard') ? 'standardisation' : 'sample',
     );
     const common = this.common(origin);
+    // Cells are read even where the titrant is not: all problems of a run at once.
+    const details =
+      task === 'sample' ? this.sample(titrant ?? 'cerium') : task === 'standardisation' ? this.standardisation() : {};
     if (task === null || titrant === null) return null;
-    const details = task === 'sample' ? this.sample(titrant) : task === 'standardisation' ? this.standardisation() : {};
     if (details === null || curve === null) return null;
     if (curve.repeats > 0) this.assumed.push(`of ${curve.repeats} readings repeated at a volume the last one counts`);
     return {

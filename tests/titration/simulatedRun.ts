@@ -22,6 +22,8 @@ export interface SimulatedBench {
   readonly buretteError?: (volume: number) => number;
   /** mV of the reference electrode against the hydrogen electrode */
   readonly reference?: number;
+  /** K */
+  readonly temperature?: number;
 }
 
 export function simulatedReadings(bench: SimulatedBench, random: Random): { volume: number[]; potential: number[] } {
@@ -43,7 +45,7 @@ export function simulatedReadings(bench: SimulatedBench, random: Random): { volu
     normality: bench.normality ?? 0.1,
     beakerVolume: bench.beakerVolume ?? 100,
     acid: bench.acid ?? 1,
-    temperature: 298.15,
+    temperature: bench.temperature ?? 298.15,
     volumes: delivered,
   }).map(
     (E, i) =>

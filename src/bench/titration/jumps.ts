@@ -22,6 +22,8 @@ export interface Jump {
 
 /** Slope above that of the flatter side by this factor makes a jump. [practice] */
 const PROMINENCE = 4;
+/** mV the potential must stay higher behind a jump: a stray reading falls back. [practice] */
+const LEAST_RISE = 40;
 /** A jump that is this much wider at half height than its steepest interval is blunt. */
 const BLUNT = 1.5;
 /** Window as share of the volume delivered. */
@@ -40,7 +42,12 @@ export function findJumps(curve: TitrationCurve, direction: 1 | -1): Jump[] {
   });
   // Below this a slope is not to be told from scatter or from a dead electrode.
   const floor = Math.max((3 * Math.SQRT2 * noise) / (WINDOW * range), 20 / range);
-  return prominentPeaks(slopes, floor).map((peak) => locate(rising, middles[peak]!, noise, WINDOW * range, direction));
+  return prominentPeaks(slopes, floor)
+    .filter((peak) => {
+      const reach = 2 * Math.max(volume[peak + 1]! - volume[peak]!, WINDOW * range);
+      return at(rising, middles[peak]! + reach) - at(rising, middles[peak]! - reach) > LEAST_RISE;
+    })
+    .map((peak) => locate(rising, middles[peak]!, noise, WINDOW * range, direction));
 }
 
 /** Potential by straight lines between readings; beyond the ends that of the end. */
