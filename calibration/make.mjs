@@ -31,15 +31,31 @@ if (existsSync(`${folder}/standards.csv`))
 const text = readFileSync(path('reference.json'), 'utf8');
 const reference = JSON.parse(text);
 const points = (value) => (100 * value).toFixed(2);
+const HEADER = ['pair', 'left out', 'n', 'bias', 'rmse', 'largest', 'inside', 'half width', 'total vanadium rmse'];
 const rows = reference.pairs.flatMap((pair) => {
   const half = pair.leftOut
     .map((x) => 1.96 * Math.hypot(x.shareUncertainty, pair.betweenGroup.share))
     .sort((a, b) => a - b);
-  return pair.validation.map(
-    ({ group, count, share, total }) =>
-      `| ${pair.pair} | ${group} | ${count} | ${points(share.bias)} | ${points(share.rmse)} | ${points(share.largest)} | ${(100 * share.coverage).toFixed(0)} % | ${group === 'all' ? points(half[Math.floor(half.length / 2)]) : ''} | ${points(total.rmse)} % |`,
-  );
+  return pair.validation.map(({ group, count, share, total }) => [
+    pair.pair,
+    group,
+    String(count),
+    points(share.bias),
+    points(share.rmse),
+    points(share.largest),
+    `${(100 * share.coverage).toFixed(0)} %`,
+    group === 'all' ? points(half[Math.floor(half.length / 2)]) : '',
+    `${points(total.rmse)} %`,
+  ]);
 });
+
+/** A table as the project's formatter lays it out, so that this script alone makes the page. */
+function table(header, body) {
+  const widths = header.map((caption, i) => Math.max(3, caption.length, ...body.map((row) => row[i].length)));
+  const line = (row) => `| ${row.map((cell, i) => cell.padEnd(widths[i])).join(' | ')} |`;
+  return [line(header), line(widths.map((width) => '-'.repeat(width))), ...body.map(line)].join('\n');
+}
+
 const constants = reference.pairs.flatMap((pair) =>
   pair.constants.map(
     ({ association, value, interval }) =>
@@ -65,14 +81,14 @@ assayed as samples. Errors of the share of the higher species (= state of charge
 themselves good to one or two points. The outer concentrations are extrapolated. "Inside" counts labels within the 95 % interval;
 "half width" is the median 95 % half width. This page is written by the script above.
 
-| pair | left out | n | bias | rmse | largest | inside | half width | total vanadium rmse |
-| --- | --- | --- | --- | --- | --- | --- | --- | --- |
-${rows.join('\n')}
+${table(HEADER, rows)}
 
 Association constants, profile over all standards:
+
 ${constants.join('\n') || '- none'}
 
 Standards in doubt:
+
 ${doubts.join('\n') || '- none'}
 `,
 );

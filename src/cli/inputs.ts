@@ -52,12 +52,16 @@ export class SpectraShelf {
     }
   }
 
-  /** One spectrum, its blank subtracted where there is one. Files are relative to the sheet that names them. */
+  /**
+   * One spectrum, its blank subtracted where there is one. Files are relative to the sheet that names them, and results name them as the
+   * sheet does: where the folder lies on this machine is no part of a record.
+   */
   spectrum(
     sheet: string,
     row: { file: string; column: string | null; blankFile: string | null; blankColumn: string | null; where: string },
   ): Spectrum {
-    const sample = findColumn(this.file(beside(sheet, row.file)).spectra, row.column, row.where);
+    const found = findColumn(this.file(beside(sheet, row.file)).spectra, row.column, row.where);
+    const sample = { ...found, origin: { ...found.origin, file: row.file } };
     if (row.blankFile === null) return sample;
     const blank = findColumn(this.file(beside(sheet, row.blankFile)).spectra, row.blankColumn, row.where);
     const { spectrum, lost } = subtractBlank(sample, blank);

@@ -1,3 +1,4 @@
+import { createHash } from 'node:crypto';
 import { readFileSync } from 'node:fs';
 import { toJsonSchema } from '@valibot/to-json-schema';
 import { describe, expect, test } from 'vitest';
@@ -18,6 +19,13 @@ describe('tankhue/calibration/1', () => {
     await expect(`${JSON.stringify(schema, null, 1)}\n`).toMatchFileSnapshot(
       '../../calibration/calibration.schema.json',
     );
+  });
+
+  test('the shipped reference says nothing of the machine it was made on, and its page belongs to it', () => {
+    const { standards } = JSON.parse(text) as { standards: { file: string }[] };
+    for (const { file } of standards) expect(file).toMatch(/^V\d-V\d-[\d.]+M\.csv$/);
+    const page = readFileSync('calibration/README.md', 'utf8');
+    expect(page).toContain(`sha256 ${createHash('sha256').update(text).digest('hex').slice(0, 16)}…`);
   });
 
   test('round trip is exact, and the file stays small', () => {
