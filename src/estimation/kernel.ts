@@ -33,16 +33,16 @@ const STARTS = 3;
 const ROUNDING = 1e-14;
 
 export interface Kernel {
-  /** 2k: projections needed of each spectrum */
-  readonly dimension: number;
   /** rows w of the map spectrum → projections, each as long as `prepared.used` */
   readonly projector: readonly Float64Array[];
   /** lower, higher (mol/L in the cuvette), s, δ of the last solution; NaN where there is none */
   readonly theta: Float64Array;
   /** @param w projections of one spectrum @returns χ² less the spectrum's own |Σ^(−½)A|² */
   solve(w: Float64Array): number;
-  /** variance of the share of the higher species at the last solution, calibration leverage included */
-  shareVariance(): number;
+  /** of the calibration at the last solution, as `calibrationLeverage` */
+  leverage(): number;
+  /** of a quantity with these derivatives by the two concentrations, at the last solution: as `concentrationCovariance` */
+  variance(byLower: number, byHigher: number, leverage: number): number;
 }
 
 export function makeKernel(prepared: Prepared, priors: CuvettePriors): Kernel {
@@ -264,31 +264,30 @@ export function makeKernel(prepared: Prepared, priors: CuvettePriors): Kernel {
     return best[OBJECTIVE]! - pathPrecision * theta[2]! * theta[2]! - shiftPrecision * theta[3]! * theta[3]!;
   };
 
-  const shareVariance = (): number => {
-    const lower = theta[0]!;
-    const higher = theta[1]!;
+  const leverage = (): number => {
+    extra.evaluate(theta[0]!, theta[1]!);
+    y[0] = theta[0]!;
+    y[1] = theta[1]!;
+    for (let j = 0; j < extras; j++) y[2 + j] = extra.amount[j]!;
+    let sum = 0;
+    for (let i = 0; i < k; i++) for (let j = 0; j < k; j++) sum += y[i]! * design[i * k + j]! * y[j]!;
+    return pathLength * pathLength * sum;
+  };
+
+  const variance = (byLower: number, byHigher: number, leverage: number): number => {
     if (!factorPacked(best, MATRIX, 1, factor)) return NaN;
-    const total = lower + higher;
-    const ga = -higher / (total * total);
-    const gb = lower / (total * total);
-    step[0] = ga;
-    step[1] = gb;
+    step[0] = byLower;
+    step[1] = byHigher;
     step[2] = 0;
     step[3] = 0;
     solvePacked(factor, step);
-    const variance = ga * step[0]! + gb * step[1]!;
+    const whole = byLower * step[0]! + byHigher * step[1]!;
     // H⁻¹IH⁻¹ with I = H − priors: what noise and modes alone make of it, and of the calibration's spectra.
-    const spectral = variance - pathPrecision * step[2]! * step[2]! - shiftPrecision * step[3]! * step[3]!;
-    extra.evaluate(lower, higher);
-    y[0] = lower;
-    y[1] = higher;
-    for (let j = 0; j < extras; j++) y[2 + j] = extra.amount[j]!;
-    let leverage = 0;
-    for (let i = 0; i < k; i++) for (let j = 0; j < k; j++) leverage += y[i]! * design[i * k + j]! * y[j]!;
-    return variance + pathLength * pathLength * leverage * spectral;
+    const spectral = whole - pathPrecision * step[2]! * step[2]! - shiftPrecision * step[3]! * step[3]!;
+    return whole + leverage * spectral;
   };
 
-  return { dimension, projector: normalProjector(image, basis), theta, solve, shareVariance };
+  return { projector: normalProjector(image, basis), theta, solve, leverage, variance };
 }
 
 /** Rows b_jᵀΣ^(−½): the projections onto the whitened spectra themselves, from those onto their orthonormal basis. */

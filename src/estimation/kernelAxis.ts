@@ -50,3 +50,21 @@ export function axisMap(axis: Float64Array, grid: Float64Array, step: number): A
   });
   return { reached, width, start, weight };
 }
+
+/** Means of rows of a matrix, one row after the other, into one array that is used again and again. */
+export function averager({ width, start, weight }: AxisMap): {
+  readonly means: Float64Array;
+  average(absorbances: Float64Array, offset: number): void;
+} {
+  const count = start.length;
+  const means = new Float64Array(count);
+  const average = (absorbances: Float64Array, offset: number): void => {
+    for (let l = 0, at = 0; l < count; l++, at += width) {
+      const from = offset + start[l]!;
+      let sum = 0;
+      for (let i = 0; i < width; i++) sum += weight[at + i]! * absorbances[from + i]!;
+      means[l] = sum;
+    }
+  };
+  return { means, average };
+}

@@ -8,32 +8,19 @@
 // Source      ours.
 import { TankhueError } from '../errors.ts';
 import type { Pair } from '../electrolyte/species.ts';
-import { assumedPathUncertainty } from './cuvette.ts';
-import { makeKernel } from './kernel.ts';
-import { axisMap, type AxisMap } from './kernelAxis.ts';
-import { DEFAULT_MODE_PRIORS, namedModes, type ModePriors } from './namedModes.ts';
-import type { PairModel } from './pairModel.ts';
-import { prepare as prepareModel, type Prepared, type Whitening } from './prepare.ts';
+import { averager, axisMap } from './kernelAxis.ts';
+import { rowSolver, type PairOnGrid, type RowCuvette } from './rowSolver.ts';
 
 /** What of a calibration is needed. */
 export interface PairsOnGrid {
   readonly grid: { readonly step: number };
-  readonly pairs: readonly {
-    readonly pair: Pair;
-    readonly model: PairModel;
-    readonly betweenGroup: { readonly share: number };
-  }[];
+  readonly pairs: readonly PairOnGrid[];
 }
 
-export interface ManyOptions {
+export interface ManyOptions extends RowCuvette {
   readonly pair: Pair;
-  /** cm */
-  readonly pathLength: number;
-  /** relative; common practice for cells of that length when absent */
-  readonly pathUncertainty?: number;
   /** ≥ 1; 1 when absent */
   readonly dilution?: number;
-  readonly priors?: ModePriors;
 }
 
 /** One number a spectrum. An array that is left out is not computed. */
@@ -44,6 +31,8 @@ export interface ManyResults {
   uncertainty?: Float64Array;
   /** mol/L of the tank */
   totalVanadium?: Float64Array;
+  /** standard uncertainty of the total, the dilution taken as exact */
+  totalUncertainty?: Float64Array;
   /** on `degreesOfFreedom` */
   chiSquare?: Float64Array;
 }
@@ -65,7 +54,7 @@ export interface PreparedMany {
  * @throws TankhueError `not-calibrated`, `out-of-range`, `too-few-wavelengths`, `axis-turns`
  */
 export function prepare(calibration: PairsOnGrid, wavelengths: Float64Array, options: ManyOptions): PreparedMany {
-  const { pathLength, dilution = 1, priors = DEFAULT_MODE_PRIORS } = options;
+  const { pathLength, dilution = 1 } = options;
   const record = calibration.pairs.find((candidate) => candidate.pair === options.pair);
   if (!record)
     throw new TankhueError(
@@ -77,93 +66,41 @@ export function prepare(calibration: PairsOnGrid, wavelengths: Float64Array, opt
   requireInRange('pathLength', pathLength, 0, 'cm');
   requireInRange('dilution', dilution, 1 - 1e-12, '');
   requireAscending(wavelengths);
-  const { model } = record;
-  const map = axisMap(wavelengths, model.wavelength, calibration.grid.step);
-  const prepared = prepareModel(model, namedModes(model.wavelength, priors), map.reached);
-  const kernel = makeKernel(prepared, {
-    pathLength,
-    pathUncertainty: options.pathUncertainty ?? assumedPathUncertainty(pathLength),
-    wavelengthUncertainty: priors.wavelengthShift,
-  });
-  const project = projection(prepared, kernel.projector, map);
-  const betweenGroup = record.betweenGroup.share ** 2;
+  const map = axisMap(wavelengths, record.model.wavelength, calibration.grid.step);
+  const { means, average } = averager(map);
+  const solver = rowSolver(record, map.reached, options);
+  const { theta } = solver;
   const ofLower = options.pair === 'V2/V3';
-  const { theta } = kernel;
 
   const solveMany = (absorbances: Float64Array, out?: ManyResults): ManyResults => {
     const count = rowsOf(absorbances, wavelengths.length, out);
-    const into = out ?? {
-      stateOfCharge: new Float64Array(count),
-      uncertainty: new Float64Array(count),
-      totalVanadium: new Float64Array(count),
-      chiSquare: new Float64Array(count),
-    };
-    const { stateOfCharge, uncertainty, totalVanadium, chiSquare } = into;
+    const into = out ?? allResults(count);
+    const { stateOfCharge, uncertainty, totalVanadium, totalUncertainty, chiSquare } = into;
     for (let row = 0; row < count; row++) {
-      project.row(absorbances, row * wavelengths.length);
-      const misfit = kernel.solve(project.w);
+      average(absorbances, row * wavelengths.length);
+      solver.solve(means);
       const total = theta[0]! + theta[1]!;
       if (stateOfCharge) stateOfCharge[row] = (ofLower ? theta[0]! : theta[1]!) / total;
       if (totalVanadium) totalVanadium[row] = total * dilution;
-      if (uncertainty) uncertainty[row] = Math.sqrt(kernel.shareVariance() + betweenGroup);
-      if (chiSquare) chiSquare[row] = Math.max(0, project.norm() + misfit);
+      if (uncertainty || totalUncertainty) {
+        const leverage = solver.leverage();
+        if (uncertainty) uncertainty[row] = solver.shareUncertainty(leverage);
+        if (totalUncertainty) totalUncertainty[row] = solver.totalUncertainty(leverage) * dilution;
+      }
+      if (chiSquare) chiSquare[row] = solver.chiSquare();
     }
     return into;
   };
-  return { degreesOfFreedom: prepared.used.length - 2, solveMany: solveMany as PreparedMany['solveMany'] };
+  return { degreesOfFreedom: solver.degreesOfFreedom, solveMany: solveMany as PreparedMany['solveMany'] };
 }
 
-/** The linear part: a row of the caller's matrix to `w`, and its squared whitened length. */
-function projection(
-  prepared: Prepared,
-  rows: readonly Float64Array[],
-  { width, start, weight }: AxisMap,
-): { readonly w: Float64Array; row(absorbances: Float64Array, offset: number): void; norm(): number } {
-  const count = start.length;
-  // Four sums at a time keep a processor busy; rows of zeros fill up.
-  const dimension = Math.ceil(rows.length / 4) * 4;
-  const means = new Float64Array(count);
-  const w = new Float64Array(dimension);
-  const flat = new Float64Array(count * dimension);
-  rows.forEach((row, j) => row.forEach((value, l) => (flat[l * dimension + j] = value)));
-  const row = (absorbances: Float64Array, offset: number): void => {
-    for (let l = 0, at = 0; l < count; l++, at += width) {
-      const from = offset + start[l]!;
-      let sum = 0;
-      for (let i = 0; i < width; i++) sum += weight[at + i]! * absorbances[from + i]!;
-      means[l] = sum;
-    }
-    for (let j = 0; j < dimension; j += 4) {
-      let [a, b, c, d] = [0, 0, 0, 0];
-      for (let l = 0, at = j; l < count; l++, at += dimension) {
-        const value = means[l]!;
-        a += flat[at]! * value;
-        b += flat[at + 1]! * value;
-        c += flat[at + 2]! * value;
-        d += flat[at + 3]! * value;
-      }
-      w[j] = a;
-      w[j + 1] = b;
-      w[j + 2] = c;
-      w[j + 3] = d;
-    }
-  };
-  return { w, row, norm: () => whitenedNorm(prepared.whitening, means) };
-}
-
-/** |Σ^(−½)x|² in factored form: nothing is written. */
-function whitenedNorm({ noise, directions, shrink }: Whitening, x: Float64Array): number {
-  let norm = 0;
-  for (let l = 0; l < x.length; l++) norm += x[l]! * x[l]!;
-  for (let j = 0; j < directions.length; j++) {
-    const direction = directions[j]!;
-    let along = 0;
-    for (let l = 0; l < x.length; l++) along += direction[l]! * x[l]!;
-    const keep = 1 - shrink[j]!;
-    norm -= (1 - keep * keep) * along * along;
-  }
-  return norm / (noise * noise);
-}
+const allResults = (count: number): Required<ManyResults> => ({
+  stateOfCharge: new Float64Array(count),
+  uncertainty: new Float64Array(count),
+  totalVanadium: new Float64Array(count),
+  totalUncertainty: new Float64Array(count),
+  chiSquare: new Float64Array(count),
+});
 
 function rowsOf(absorbances: Float64Array, points: number, out: ManyResults | undefined): number {
   const count = absorbances.length / points;

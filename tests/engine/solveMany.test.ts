@@ -30,6 +30,7 @@ interface Expected {
   readonly stateOfCharge: number;
   readonly uncertainty: number;
   readonly total: number;
+  readonly totalUncertainty: number;
   readonly chiSquare: number;
 }
 
@@ -60,6 +61,7 @@ function byReference(calibration: PairsOnGrid, pair: Pair, spectrum: Spectrum, p
     stateOfCharge: pair === 'V2/V3' ? 1 - found.share : found.share,
     uncertainty: Math.hypot(found.shareUncertainty, betweenGroup.share),
     total: found.total,
+    totalUncertainty: Math.hypot(found.totalUncertainty, betweenGroup.total * found.total),
     chiSquare: solution.chiSquare,
   };
 }
@@ -72,6 +74,7 @@ function expectSame(calibration: PairsOnGrid, pair: Pair, spectrum: Spectrum, pa
   expect(Math.abs(found.stateOfCharge[0]! - expected.stateOfCharge)).toBeLessThan(1e-7);
   expect(Math.abs(found.totalVanadium[0]! / dilution / expected.total - 1)).toBeLessThan(1e-6);
   expect(Math.abs(found.uncertainty[0]! / expected.uncertainty - 1)).toBeLessThan(1e-5);
+  expect(Math.abs(found.totalUncertainty[0]! / dilution / expected.totalUncertainty - 1)).toBeLessThan(1e-5);
   expect(Math.abs(found.chiSquare[0]! / expected.chiSquare - 1)).toBeLessThan(1e-5);
 }
 
@@ -148,7 +151,7 @@ test('spoiled spectra, where one minimum is not enough: the same', () => {
 
 const invented = (associations: ReturnType<typeof inventedModel>['associations']): PairsOnGrid => {
   const model = { ...inventedModel(), associations };
-  return { grid: { step: 5 }, pairs: [{ pair: model.pair, model, betweenGroup: { share: 0.004 } }] };
+  return { grid: { step: 5 }, pairs: [{ pair: model.pair, model, betweenGroup: { share: 0.004, total: 0.01 } }] };
 };
 
 test.each([
