@@ -44,7 +44,7 @@ export function fitSampleByPair(
   const { model } = pairCalibration;
   const curve = resample(sample.spectrum, model.wavelength, calibration.grid.step).absorbance;
   const usable = Array.from(curve, (value) => Number.isFinite(value) && value <= options.ceiling);
-  const prepared = prepare(model, namedModes(model.wavelength, options.priors), usable);
+  const prepared = (options.prepare ?? prepare)(model, namedModes(model.wavelength, options.priors), usable);
   const absorbance = Float64Array.from(prepared.used, (i) => curve[i]!);
   const cuvette: CuvettePriors = {
     pathLength,
@@ -57,7 +57,6 @@ export function fitSampleByPair(
   const found = shareAndTotal(solution.lower, solution.higher, concentrationCovariance(prepared, solution, pathLength));
   const fitted = fittedCurve(prepared, solution, pathLength).total;
   const brightness = Math.max(1, fitted.reduce((a, b) => Math.max(a, b), 0) / pairCalibration.domain.absorbance);
-  const { mean, deviation, count } = pairCalibration.match;
   const freedom = prepared.used.length - 2;
   const foreign = foreignSpectra(
     model,
@@ -73,9 +72,7 @@ export function fitSampleByPair(
     brightness,
     share: found.share,
     shareUncertainty: found.shareUncertainty * brightness,
-    match:
-      (Math.log(solution.chiSquare / (brightness ** 2 * (1 + leverage)) / freedom) - mean) /
-      (Math.max(deviation, 0.3) * Math.sqrt(1 + 1 / Math.max(1, count))),
+    match: matchOf(pairCalibration, solution.chiSquare / (brightness ** 2 * (1 + leverage)) / freedom),
     faults: scoreFaults(prepared, absorbance, solution, cuvette, [
       ...cuvetteFaults(prepared, fitted),
       ...foreignFaults(prepared, pathLength, foreign),
@@ -86,6 +83,11 @@ export function fitSampleByPair(
       informationLeft: informationLeft(prepared, usable),
     },
   };
+}
+
+/** @param reducedChiSquare per degree of freedom, calibration's share and brightness taken out */
+export function matchOf({ match: { mean, deviation, count } }: PairCalibration, reducedChiSquare: number): number {
+  return (Math.log(reducedChiSquare) - mean) / (Math.max(deviation, 0.3) * Math.sqrt(1 + 1 / Math.max(1, count)));
 }
 
 /** Part of the squared difference between the two species' spectra that lies on wavelengths still in use. */

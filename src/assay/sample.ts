@@ -1,5 +1,6 @@
 import type { Side } from '../electrolyte/species.ts';
 import type { ModePriors } from '../estimation/namedModes.ts';
+import type { prepare } from '../estimation/prepare.ts';
 import type { Spectrum } from '../spectrum/spectrum.ts';
 
 /** How the blank came to be subtracted: `given` from a file, `instrument` as the standards were, `missing` where one was asked for and not named. */
@@ -41,6 +42,8 @@ export interface AssayOptions {
   readonly ceiling: number;
   /** keep curves for drawing in the result */
   readonly keepCurves: boolean;
+  /** another `prepare`, for who assays many spectra on one axis and keeps the preparations; must give the same */
+  readonly prepare?: typeof prepare;
 }
 
 /** Relative uncertainty of a dilution of unstated uncertainty: class A glassware with care (common practice, no source). */

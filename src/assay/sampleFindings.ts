@@ -129,7 +129,7 @@ function unknownFindings(sample: Sample): Finding[] {
 }
 
 /** Total vanadium above the largest of the standards by this factor is outside. */
-const ABOVE = 1.15;
+export const ABOVE = 1.15;
 const LEVERAGE_CAUTION = 1;
 const LEVERAGE_WITHHOLD = 4;
 
@@ -200,8 +200,8 @@ function nearlyPureNeighbour(sample: Sample, chosen: PairFitOfSample): boolean {
 const NEARLY_PURE = 0.02;
 
 /** Standard uncertainty of the state of charge, 1. */
-const UNCERTAIN_CAUTION = 0.02;
-const UNCERTAIN_WITHHOLD = 0.05;
+export const UNCERTAIN_CAUTION = 0.02;
+export const UNCERTAIN_WITHHOLD = 0.05;
 
 export function uncertaintyFindings(fit: PairFitOfSample, uncertainty: number): Finding[] {
   if (uncertainty <= UNCERTAIN_CAUTION) return [];

@@ -8,6 +8,7 @@ const VERBS: Readonly<Record<string, () => Promise<{ register: (program: Command
   assay: () => import('./assay.ts'),
   balance: () => import('./balance.ts'),
   simulate: () => import('./simulate.ts'),
+  follow: () => import('./follow.ts'),
   verify: () => import('./verify.ts'),
   check: () => import('./check.ts'),
   precision: () => import('./precision.ts'),

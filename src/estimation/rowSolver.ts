@@ -35,8 +35,11 @@ export interface RowSolver {
   solve(means: Float64Array): void;
   chiSquare(): number;
   leverage(): number;
-  /** standard uncertainty of the share of either species, calibration and between-group variance included */
-  shareUncertainty(leverage: number): number;
+  /**
+   * standard uncertainty of the share of either species, calibration and between-group variance included
+   * @param brightness 1, or how many times darker than the darkest standard the spectrum is
+   */
+  shareUncertainty(leverage: number, brightness?: number): number;
   /** the same for the total, mol/L in the cuvette */
   totalUncertainty(leverage: number): number;
 }
@@ -68,11 +71,12 @@ export function rowSolver(record: PairOnGrid, usable: ArrayLike<unknown>, cuvett
     },
     chiSquare: () => Math.max(0, whitenedNorm(prepared.whitening, last) + misfit),
     leverage: kernel.leverage,
-    shareUncertainty: (leverage) => {
+    shareUncertainty: (leverage, brightness = 1) => {
       const total = theta[0]! + theta[1]!;
       const byLower = -theta[1]! / (total * total);
       const byHigher = theta[0]! / (total * total);
-      return Math.sqrt(kernel.variance(byLower, byHigher, leverage) + betweenGroup.share * betweenGroup.share);
+      const within = brightness * brightness * kernel.variance(byLower, byHigher, leverage);
+      return Math.sqrt(within + betweenGroup.share * betweenGroup.share);
     },
     totalUncertainty: (leverage) => {
       const between = betweenGroup.total * (theta[0]! + theta[1]!);

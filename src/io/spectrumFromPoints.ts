@@ -25,6 +25,8 @@ const TO_ABSORBANCE: Readonly<Record<OrdinateUnit, (value: number) => number>> =
   T: absorbanceFromTransmittance,
 };
 
+export const toAbsorbance = (unit: OrdinateUnit): ((value: number) => number) => TO_ABSORBANCE[unit];
+
 /** An axis as it stands in a file, and as we use it. Spectra on one axis share it. */
 export interface MeasuredAxis {
   readonly unit: AxisUnit;

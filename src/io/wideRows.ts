@@ -77,17 +77,14 @@ export function wideHeader(line: string): WideLayout | null {
   return null;
 }
 
-/** @throws TankhueError `no-wavelengths` */
-export function requireWideHeader(line: string | undefined, where: string): WideLayout {
-  const layout = line === undefined ? null : wideHeader(line);
-  if (layout) return layout;
-  throw new TankhueError(
+/** The refusal of a file that has no such line. */
+export const noWavelengths = (line: string | undefined, where: string): TankhueError =>
+  new TankhueError(
     'no-wavelengths',
     `expected a line of ${FEWEST} wavelengths or more (nm), one spectrum a line below it; received ${quoted(line ?? 'nothing')}`,
     where,
     'spectra in columns are read by assay; for a series write one line a spectrum under a line of wavelengths',
   );
-}
 
 /**
  * @param bytes whole lines only: the last byte is a line end
