@@ -1,6 +1,6 @@
 // What        A series of spectra of one cell on one axis, each with its state of charge and every doubt about it.
 // Equation    each row: fast solver of the side's own pair and a screen (masked points, match, uncertainty, share, total);
-//             a full assay where the screen changes its mind, and at least every 100th row.
+//             a full assay where the screen changes its mind or the match jumps, and at least every 100th row.
 // Why so      A full assay costs a thousand times the fast solver. Neighbours of a series resemble each other, so what a full assay says
 //             of one row holds for those after it until the screen sees a difference.
 // Valid for   one side, one path, one dilution, one axis. A doubt that the screen cannot see shows up to 100 rows late.
@@ -56,6 +56,8 @@ export interface SeriesAssay {
 
 /** Rows from one full assay to the next when nothing changes. */
 const FULL_EVERY = 100;
+/** Change of the match since the last full assay that asks for another; from row to row it moves by a tenth. */
+const JUMP = 1;
 /** Masks that are kept prepared. */
 const MOST_MASKS = 24;
 const NOTHING: Quantity = { value: null, uncertainty: null };
@@ -97,6 +99,7 @@ export function seriesAssay(
       if (
         last === null ||
         screened.doubts !== lastDoubts ||
+        Math.abs(screened.match - (last.match ?? NaN)) > JUMP ||
         since >= FULL_EVERY ||
         last.pair !== PAIR_OF_SIDE[cuvette.side]
       ) {

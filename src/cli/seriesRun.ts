@@ -212,7 +212,7 @@ class Book {
       const events = this.events({
         row: this.row,
         time: timeOf(labels[timeColumn] ?? null),
-        match: diagnosis.state === 'withheld' ? null : match,
+        match: diagnosis.findings.some((one) => one.code === 'too-faint') ? null : match,
         axis: results.axes[results.axis[i]!]!,
       });
       const findings = [...events, ...diagnosis.findings.filter((one) => one.severity !== 'note')];

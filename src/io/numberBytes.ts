@@ -20,6 +20,7 @@ export function numberFromBytes(bytes: Uint8Array, from: number, to: number): nu
   const start = i;
   const negative = bytes[i] === MINUS;
   if (negative || bytes[i] === PLUS) i++;
+  const first = i;
   let value = 0;
   let digits = 0;
   let decimals = 0;
@@ -33,8 +34,7 @@ export function numberFromBytes(bytes: Uint8Array, from: number, to: number): nu
     } else if (!point && (bytes[i] === POINT || bytes[i] === COMMA)) point = true;
     else return throughText(bytes, start, end);
   }
-  if (digits > EXACT_DIGITS || decimals > 22 || end - start === (negative ? 1 : 0) + (point ? 1 : 0))
-    return throughText(bytes, start, end);
+  if (digits > EXACT_DIGITS || decimals > 22 || end - first === (point ? 1 : 0)) return throughText(bytes, start, end);
   const size = decimals === 0 ? value : value / POWERS[decimals]!;
   return negative ? -size : size;
 }
