@@ -2,7 +2,7 @@ import type { Finding } from '../finding.ts';
 import { seriesEvents } from '../assay/seriesEvents.ts';
 import { wideHeader } from '../io/wideRows.ts';
 import { seriesLine, type SeriesRecord } from '../report/seriesNdjson.ts';
-import type { SeriesPiece, SeriesPieceResults } from './seriesChunk.ts';
+import { axisInWords, type SeriesPiece, type SeriesPieceResults } from './seriesChunk.ts';
 import type { Bookmark, Piece, SeriesLayout } from './seriesSource.ts';
 import { WorkerLost, type WorkerPool } from './workerPool.ts';
 
@@ -114,7 +114,7 @@ async function answerOf(pool: Pool, piece: Piece, layout: SeriesLayout, sink: Se
   }
   const half = piece.bytes.indexOf(10, piece.bytes.length >> 1) + 1;
   const cut = half > 0 && half < piece.bytes.length ? half : piece.bytes.indexOf(10) + 1;
-  if (cut <= 0 || cut >= piece.bytes.length) return lostRow(piece.bytes.length);
+  if (cut <= 0 || cut >= piece.bytes.length) return lostRow(piece.bytes.length, layout);
   const front = await answerOf(pool, { offset: piece.offset, bytes: piece.bytes.subarray(0, cut) }, layout, sink);
   if (front.header !== null) return front;
   return joined(
@@ -124,7 +124,7 @@ async function answerOf(pool: Pool, piece: Piece, layout: SeriesLayout, sink: Se
   );
 }
 
-function lostRow(bytes: number): SeriesPieceResults {
+function lostRow(bytes: number, layout: SeriesLayout): SeriesPieceResults {
   const none = Float64Array.of(NaN);
   return {
     count: 1,
@@ -153,7 +153,7 @@ function lostRow(bytes: number): SeriesPieceResults {
     ],
     assayedBefore: Int32Array.of(0),
     axis: Int32Array.of(0),
-    axes: [''],
+    axes: [axisInWords(layout.kind === 'wide' ? layout.wide.wavelength : layout.axis.wavelength)],
     header: null,
   };
 }

@@ -73,8 +73,9 @@ function expectSame(calibration: PairsOnGrid, pair: Pair, spectrum: Spectrum, pa
   );
   expect(Math.abs(found.stateOfCharge[0]! - expected.stateOfCharge)).toBeLessThan(1e-7);
   expect(Math.abs(found.totalVanadium[0]! / dilution / expected.total - 1)).toBeLessThan(1e-6);
-  expect(Math.abs(found.uncertainty[0]! / expected.uncertainty - 1)).toBeLessThan(1e-5);
-  expect(Math.abs(found.totalUncertainty[0]! / dilution / expected.totalUncertainty - 1)).toBeLessThan(1e-5);
+  // Both take the matrix a last step, up to 1e-4 standard uncertainties, before the minimum.
+  expect(Math.abs(found.uncertainty[0]! / expected.uncertainty - 1)).toBeLessThan(1e-4);
+  expect(Math.abs(found.totalUncertainty[0]! / dilution / expected.totalUncertainty - 1)).toBeLessThan(1e-4);
   expect(Math.abs(found.chiSquare[0]! / expected.chiSquare - 1)).toBeLessThan(1e-5);
 }
 
