@@ -15,40 +15,59 @@ export interface AxisMap {
   readonly weight: Float64Array;
 }
 
-/** @param axis nm, ascending @param grid nm @param step of the grid, nm */
+/**
+ * The weights are asked of `resample` itself, so that there is one rule: spectra of ones, so far apart that no grid point sees two.
+ * @param axis nm, ascending @param grid nm @param step of the grid, nm
+ */
 export function axisMap(axis: Float64Array, grid: Float64Array, step: number): AxisMap {
-  const unit = {
+  const { first, width: widest } = reachOf(axis, grid, step);
+  const comb = {
     name: '',
     wavelength: axis,
     absorbance: new Float64Array(axis.length),
     origin: { file: '', column: '', sha256: '' },
   };
-  const { absorbance: reach } = resample(unit, grid, step);
-  const reached = Uint8Array.from(reach, (value) => (Number.isNaN(value) ? 0 : 1));
+  const responses = Array.from({ length: widest }, (_, tooth) => {
+    comb.absorbance.forEach((_value, i) => (comb.absorbance[i] = i % widest === tooth ? 1 : 0));
+    return resample(comb, grid, step).absorbance;
+  });
+  const reached = Uint8Array.from(grid, (_, g) => (Number.isNaN(responses[0]![g]!) ? 0 : 1));
   const used = [...reached.keys()].filter((g) => reached[g]);
-  const first = new Int32Array(grid.length).fill(axis.length);
-  const last = new Int32Array(grid.length).fill(-1);
-  const columns: Float64Array[] = [];
-  for (let i = 0; i < axis.length; i++) {
-    unit.absorbance.fill(0);
-    unit.absorbance[i] = 1;
-    const { absorbance } = resample(unit, grid, step);
-    columns.push(absorbance);
-    for (const g of used)
-      if (absorbance[g] !== 0) {
-        first[g] = Math.min(first[g]!, i);
-        last[g] = i;
-      }
-  }
-  const width = used.reduce((widest, g) => Math.max(widest, last[g]! - first[g]! + 1), 1);
+  const weightOf = (g: number, i: number): number => responses[i % widest]![g]!;
+  const needed = used.map((g) => {
+    const points = Array.from({ length: widest }, (_, k) => first[g]! + k).filter(
+      (i) => i < axis.length && Math.abs(weightOf(g, i)) > NO_WEIGHT,
+    );
+    return { from: points[0]!, to: points[points.length - 1]! };
+  });
+  const width = needed.reduce((most, { from, to }) => Math.max(most, to - from + 1), 1);
   // A window that would reach beyond the points in use starts earlier: a point nobody needs must not spoil a row by being NaN.
-  const latest = used.length > 0 ? last[used[used.length - 1]!]! - width + 1 : 0;
-  const start = Int32Array.from(used, (g) => Math.min(first[g]!, latest));
+  const latest = needed.length > 0 ? needed[needed.length - 1]!.to - width + 1 : 0;
+  const start = Int32Array.from(needed, ({ from }) => Math.max(0, Math.min(from, latest)));
   const weight = new Float64Array(used.length * width);
-  used.forEach((g, r) => {
-    for (let i = 0; i < width; i++) weight[r * width + i] = columns[start[r]! + i]![g]!;
+  needed.forEach(({ from, to }, r) => {
+    for (let i = from; i <= to; i++) weight[r * width + i - start[r]!] = weightOf(used[r]!, i);
   });
   return { reached, width, start, weight };
+}
+
+/** Weights below are rounding. */
+const NO_WEIGHT = 1e-12;
+/** Points beyond the stretch of a mean that it may lean on, at each end. */
+const LEANING = 2;
+
+/** First point that each grid point may need, and the most that any may need. */
+function reachOf(axis: Float64Array, grid: Float64Array, step: number): { first: Int32Array; width: number } {
+  let low = 0;
+  let high = 0;
+  let width = 1;
+  const first = Int32Array.from(grid, (nm) => {
+    while (low < axis.length && axis[low]! < nm - step / 2) low++;
+    while (high < axis.length && axis[high]! <= nm + step / 2) high++;
+    width = Math.max(width, high - low + 2 * LEANING);
+    return Math.max(0, low - LEANING);
+  });
+  return { first, width };
 }
 
 /** Means of rows of a matrix, one row after the other, into one array that is used again and again. */
