@@ -4,7 +4,7 @@ import { combineReplicates } from '../assay/combine.ts';
 import type { AssayOptions } from '../assay/sample.ts';
 import { TankhueError } from '../errors.ts';
 import type { Spectrum } from '../spectrum/spectrum.ts';
-import { balancePlant, type BalanceDocument } from '../tanks/balance.ts';
+import { balanceVisits, type BalanceDocument } from '../tanks/balance.ts';
 import { plantFromAssays } from '../tanks/fromAssays.ts';
 import type { SamplesRow } from './samplesSheet.ts';
 import type { TanksRow } from './tanksSheet.ts';
@@ -51,7 +51,10 @@ export const assayDocumentOf = (inUse: CalibrationInUse, cuvettes: readonly Cuve
   ],
 });
 
-/** One balance for each system that the rows name, also where none of its cuvettes could be read. */
+/**
+ * One balance for each system that the rows name, also where none of its cuvettes could be read. Rows of one system drawn on several days
+ * are visits: the last is balanced, all of them show the drift.
+ */
 export function balanceDocumentOf(
   inUse: CalibrationInUse,
   rows: readonly TanksRow[],
@@ -63,8 +66,16 @@ export function balanceDocumentOf(
   return {
     schema: 'tankhue/balance/1',
     calibration: { name: inUse.calibration.name, sha256: inUse.sha256 },
-    systems: [...bySystem].map(([system, members]) => balancePlant(plantFromAssays(system, members))),
+    systems: [...bySystem].map(([system, members]) => balanceVisits(visitsOf(members).map((visit) => plantFromAssays(system, visit)))),
   };
+}
+
+/** Cuvettes by day of sampling, earliest first; those without a date belong to the last visit. */
+function visitsOf<Member extends { readonly details: TanksRow }>(members: readonly Member[]): Member[][] {
+  const day = ({ details }: Member): string | null => (details.takenAt === null ? null : new Date(details.takenAt).toISOString().slice(0, 10));
+  const days = [...new Set(members.map(day).filter((one) => one !== null))].sort();
+  if (days.length < 2) return [[...members]];
+  return days.map((one) => members.filter((member) => (day(member) ?? days.at(-1)) === one));
 }
 
 /** Fillings of one sample become one cuvette; what cannot be combined stays apart. */

@@ -30,6 +30,7 @@ function oneSystem(system: SystemBalance): string {
     ...(system.netOxidation.value === null ? [] : numberLines(system)),
     row('negative', `${percentText(negative.value, negative.uncertainty)} % charged`),
     row('positive', `${percentText(positive.value, positive.uncertainty)} % charged`),
+    ...driftLines(system),
     ...(system.openCircuit
       ? [
           row(
@@ -52,6 +53,17 @@ function oneSystem(system: SystemBalance): string {
       : []),
     '',
   ].join('\n');
+}
+
+const day = (time: number): string => new Date(time).toISOString().slice(0, 10);
+
+function driftLines(system: SystemBalance): string[] {
+  if (!system.drift) return [];
+  const line = (label: string, { rate, actAt, notBefore }: NonNullable<SystemBalance['drift']>['netOxidation']): string => {
+    const expected = actAt === null ? 'no certain drift' : `act limit about ${day(actAt)}`;
+    return row(label, `${quantityText(rate.value, rate.uncertainty)} mol a month; ${expected}, not before ${notBefore === null ? 'ever' : day(notBefore)}`);
+  };
+  return [line('drift of X', system.drift.netOxidation), line('drift of M', system.drift.vanadiumShift)];
 }
 
 const gainText = (gain: number, recovered: number): string =>

@@ -3,6 +3,7 @@ import type { Finding } from '../finding.ts';
 import { PAIR_OF_SIDE } from '../electrolyte/species.ts';
 import { AMPERE_HOURS_PER_MOLE } from '../units.ts';
 import { DISCLAIMER } from './cautions.ts';
+import { driftOf, type Drift, type Visit } from './drift.ts';
 import { imbalanceOf, type Estimate, type Imbalance } from './imbalance.ts';
 import { USUAL_LIMITS, type Limits } from './limits.ts';
 import { cellVoltage, openCircuitUncertainty, predictedOpenCircuit, TYPICAL_FORMAL_POTENTIAL } from './openCircuit.ts';
@@ -44,6 +45,8 @@ export interface SystemBalance {
   readonly findings: readonly Finding[];
   readonly assumed: readonly string[];
   readonly disclaimer: string;
+  /** absent with one visit */
+  readonly drift?: Drift;
 }
 
 export interface BalanceDocument {
@@ -54,6 +57,31 @@ export interface BalanceDocument {
 
 const unknown = (unit: string): UnitQuantity => ({ value: null, uncertainty: null, unit });
 const quantity = (estimate: Estimate, unit: string): UnitQuantity => ({ ...estimate, unit });
+
+/** The last visit balanced, with the drift over all of them. @param visits earliest first */
+export function balanceVisits(visits: readonly PlantReading[]): SystemBalance {
+  const balances = visits.map(balancePlant);
+  const last = balances.at(-1)!;
+  const dated = balances.flatMap((balance, i): Visit[] => {
+    const time = visits[i]!.takenAt;
+    const { netOxidation: X, vanadiumShift: M } = balance;
+    return time === null || X.value === null || M.value === null
+      ? []
+      : [
+          {
+            time,
+            netOxidation: { value: X.value, uncertainty: X.uncertainty! },
+            vanadiumShift: { value: M.value, uncertainty: M.uncertainty! },
+          },
+        ];
+  });
+  const half = last.fullCharge.value ?? 0;
+  const drift = driftOf(dated, {
+    netOxidation: 2 * half * last.limits.oxidation.act,
+    vanadiumShift: half * last.limits.shift.act,
+  });
+  return drift ? { ...last, drift } : last;
+}
 
 /** The state of one plant, what happened to it, and what puts it right. */
 export function balancePlant(reading: PlantReading): SystemBalance {

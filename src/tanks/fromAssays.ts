@@ -60,6 +60,10 @@ export function plantFromAssays(
       fill.negative !== null && fill.positive !== null ? { negative: fill.negative, positive: fill.positive } : null,
     targetOxidationState: first((details) => details.targetOxidationState),
     limits: { ...(watch === null ? {} : { watch }), ...(act === null ? {} : { act }) },
+    takenAt: cuvettes.reduce<number | null>(
+      (latest, { details }) => (details.takenAt === null ? latest : Math.max(latest ?? -Infinity, details.takenAt)),
+      null,
+    ),
     hoursApart: hoursApart(cuvettes),
   };
 }

@@ -42,6 +42,8 @@ export interface PlantReading {
   readonly fill: { readonly negative: number; readonly positive: number } | null;
   readonly targetOxidationState: number | null;
   readonly limits: Partial<{ readonly watch: number; readonly act: number }>;
+  /** ms since 1970, when the last of its cuvettes was drawn; null where nobody said */
+  readonly takenAt: number | null;
   /** h between the drawing of the two sides */
   readonly hoursApart: number | null;
 }
