@@ -66,13 +66,16 @@ export function balanceDocumentOf(
   return {
     schema: 'tankhue/balance/1',
     calibration: { name: inUse.calibration.name, sha256: inUse.sha256 },
-    systems: [...bySystem].map(([system, members]) => balanceVisits(visitsOf(members).map((visit) => plantFromAssays(system, visit)))),
+    systems: [...bySystem].map(([system, members]) =>
+      balanceVisits(visitsOf(members).map((visit) => plantFromAssays(system, visit))),
+    ),
   };
 }
 
 /** Cuvettes by day of sampling, earliest first; those without a date belong to the last visit. */
 function visitsOf<Member extends { readonly details: TanksRow }>(members: readonly Member[]): Member[][] {
-  const day = ({ details }: Member): string | null => (details.takenAt === null ? null : new Date(details.takenAt).toISOString().slice(0, 10));
+  const day = ({ details }: Member): string | null =>
+    details.takenAt === null ? null : new Date(details.takenAt).toISOString().slice(0, 10);
   const days = [...new Set(members.map(day).filter((one) => one !== null))].sort();
   if (days.length < 2) return [[...members]];
   return days.map((one) => members.filter((member) => (day(member) ?? days.at(-1)) === one));

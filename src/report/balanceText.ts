@@ -59,9 +59,15 @@ const day = (time: number): string => new Date(time).toISOString().slice(0, 10);
 
 function driftLines(system: SystemBalance): string[] {
   if (!system.drift) return [];
-  const line = (label: string, { rate, actAt, notBefore }: NonNullable<SystemBalance['drift']>['netOxidation']): string => {
+  const line = (
+    label: string,
+    { rate, actAt, notBefore }: NonNullable<SystemBalance['drift']>['netOxidation'],
+  ): string => {
     const expected = actAt === null ? 'no certain drift' : `act limit about ${day(actAt)}`;
-    return row(label, `${quantityText(rate.value, rate.uncertainty)} mol a month; ${expected}, not before ${notBefore === null ? 'ever' : day(notBefore)}`);
+    return row(
+      label,
+      `${quantityText(rate.value, rate.uncertainty)} mol a month; ${expected}, not before ${notBefore === null ? 'ever' : day(notBefore)}`,
+    );
   };
   return [line('drift of X', system.drift.netOxidation), line('drift of M', system.drift.vanadiumShift)];
 }

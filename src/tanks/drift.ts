@@ -35,7 +35,10 @@ export interface Visit {
 const MONTH = 30.44 * 86_400_000;
 
 /** @param limits act limits of |X| and |M|, mol @returns null below two visits */
-export function driftOf(visits: readonly Visit[], limits: { readonly netOxidation: number; readonly vanadiumShift: number }): Drift | null {
+export function driftOf(
+  visits: readonly Visit[],
+  limits: { readonly netOxidation: number; readonly vanadiumShift: number },
+): Drift | null {
   const ordered = [...visits].sort((a, b) => a.time - b.time);
   const first = ordered[0];
   const last = ordered.at(-1);
@@ -50,7 +53,10 @@ export function driftOf(visits: readonly Visit[], limits: { readonly netOxidatio
     const total = weights.reduce((a, b) => a + b, 0);
     const mean = weights.reduce((sum, w, i) => sum + w * months[i]!, 0) / total;
     const uncertainty = 1 / Math.sqrt(weights.reduce((sum, w, i) => sum + w * (months[i]! - mean) ** 2, 0));
-    return { rate: { value: slope, uncertainty }, ...reachedAt(last.time, last[which], { value: slope, uncertainty }, limits[which]) };
+    return {
+      rate: { value: slope, uncertainty },
+      ...reachedAt(last.time, last[which], { value: slope, uncertainty }, limits[which]),
+    };
   };
   return {
     visits: ordered.length,
@@ -61,7 +67,12 @@ export function driftOf(visits: readonly Visit[], limits: { readonly netOxidatio
   };
 }
 
-function reachedAt(now: number, value: Estimate, rate: Estimate, limit: number): { actAt: number | null; notBefore: number | null } {
+function reachedAt(
+  now: number,
+  value: Estimate,
+  rate: Estimate,
+  limit: number,
+): { actAt: number | null; notBefore: number | null } {
   // Seen from the side the drift leads to.
   const sign = Math.sign(rate.value) || 1;
   const left = limit - sign * value.value;
