@@ -41,6 +41,7 @@ export {
   type PreparedMany,
 } from './estimation/solveMany.ts';
 export { seededRandom, type Random } from './numerics/random.ts';
+export { drawComposition, type CompositionSource, type DrawnComposition } from './estimation/monteCarloComposition.ts';
 export { simulateSpectrum, type SimulatedNoise, type SimulationRequest } from './estimation/simulate.ts';
 export { NO_FAULTS, type SimulatedFaults } from './estimation/simulateFaults.ts';
 export { compositionAt, parseComposition, sideHolding, type Composition } from './electrolyte/composition.ts';

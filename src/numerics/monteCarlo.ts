@@ -43,11 +43,11 @@ export function monteCarlo<Inputs>(
   const values = new Float64Array(trials);
   for (let r = 0; r < trials; r++) values[r] = f(draw(random));
   expectFinite(values, 'draws');
-  return summarised(values);
+  return summaryOfDraws(values);
 }
 
-/** Sorts the values in place. */
-function summarised(values: Float64Array): Drawn {
+/** Mean, deviation and intervals of draws, which are sorted in place. */
+export function summaryOfDraws(values: Float64Array): Drawn {
   values.sort();
   const trials = values.length;
   // Two passes, as the draws often share their leading digits.
