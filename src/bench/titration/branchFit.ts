@@ -155,6 +155,7 @@ export function fitBranches(
     levels = firstLevels(curve, course, jumps, stateOf(problem, parameters, levels), problem.nernst);
   }
   reselect();
+  if (selected.length === 0) return jumpsAlone(problem, scatter);
   let step = linearised(problem, selected, parameters, scatter);
   for (let round = 0; round < ROUNDS; round++) {
     const moved = addTo(parameters, step.fit.coefficients);
@@ -305,6 +306,31 @@ export function zerosOf(
     ...(end && names(branch.to) ? [{ side: 'before' as const, zero: end }] : []),
     ...(start && names(branch.from) ? [{ side: 'after' as const, zero: start }] : []),
   ]);
+}
+
+/** Without a branch that obeys Nernst's law nothing is known but the jumps. */
+function jumpsAlone({ jumps, course, priors, readingUncertainty }: Problem, scatter: number): BranchFit {
+  const needed = jumps.slice(0, course.steps.length);
+  const count = needed.length;
+  const unfitted = (j: number): FittedEffect => ({
+    value: priors[j]!.mean,
+    uncertainty: priors[j]!.deviation,
+    inPriorUnits: 0,
+  });
+  return {
+    endPoints: needed.map(({ volume }) => volume),
+    covariance: Float64Array.from({ length: count * count }, (_, m) =>
+      Math.floor(m / count) === m % count ? needed[m % count]!.uncertainty ** 2 : 0,
+    ),
+    // the width of an interval is known, not estimated from scatter
+    degreesOfFreedom: Infinity,
+    gran: [],
+    scatter: { potential: scatter, volume: readingUncertainty },
+    slopeError: unfitted(0),
+    drift: unfitted(1),
+    lagCorrelation: 0,
+    worst: null,
+  };
 }
 
 function describe(

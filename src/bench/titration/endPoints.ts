@@ -36,11 +36,14 @@ export function endPointsOf(run: TitrationRun, course: Course): EndPointsOfRun {
     titrant: run.titrant,
     state: stateOf(findings),
     endPoints,
-    electrode: fit && {
-      scatter: fit.scatter.potential,
-      drift: { value: fit.drift.value, uncertainty: fit.drift.uncertainty },
-      slopeError: { value: fit.slopeError.value, uncertainty: fit.slopeError.uncertainty },
-    },
+    electrode:
+      fit && fit.gran.length > 0
+        ? {
+            scatter: fit.scatter.potential,
+            drift: { value: fit.drift.value, uncertainty: fit.drift.uncertainty },
+            slopeError: { value: fit.slopeError.value, uncertainty: fit.slopeError.uncertainty },
+          }
+        : null,
     findings,
     assumed: [...run.assumed],
     curve: { volume: [...run.curve.volume], potential: [...run.curve.potential] },
@@ -84,7 +87,7 @@ export function measuredVolumes(run: TitrationRun, { volumes, covariance }: EndP
 function endPointOf(step: string, j: number, course: Course, fit: BranchFit, jump: Jump, burette: number): EndPoint {
   const volume = fit.endPoints[j]!;
   const uncertainty = Math.sqrt(fit.covariance[j * fit.endPoints.length + j]!);
-  const reach = studentQuantile(0.975, fit.degreesOfFreedom) * uncertainty;
+  const reach = studentQuantile(0.975, Math.min(1e6, fit.degreesOfFreedom)) * uncertainty;
   const methods: EndPointByMethod[] = [
     {
       method: 'second derivative',
