@@ -127,3 +127,4 @@ export { colourThrough, type SeenColour } from './electrolyte/colour.ts';
 export { colourDifference } from './electrolyte/colourDifference.ts';
 export { extensionFindings, requireOldStandards } from './calibration/extend.ts';
 export { transferCalibration, type Transfer } from './calibration/transfer.ts';
+export { precisionForAssay } from './assay/precisionRecord.ts';

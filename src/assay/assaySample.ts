@@ -9,7 +9,7 @@ import { newAmounts } from '../electrolyte/forwardModel.ts';
 import { dot } from '../numerics/gramSchmidt.ts';
 import { millimetresFromCentimetres } from '../units.ts';
 import { choosePair } from './choosePair.ts';
-import { errorSourcesOf } from './errorSources.ts';
+import { errorSourcesOf, repeatabilityBeyond } from './errorSources.ts';
 import { numbersOf, withoutValues } from './numbers.ts';
 import { opticalFindings } from './opticalFindings.ts';
 import { fitSampleByPair, type PairFitOfSample } from './pairFit.ts';
@@ -58,7 +58,10 @@ export function assaySample(
     assumed.push(`dilution known to ${100 * ASSUMED_DILUTION_UNCERTAINTY} % (common practice, no source)`);
   if (sample.temperature === null) assumed.push('temperature of the standards');
 
-  const sources = errorSourcesOf(fit, sample, dilution, `${inUse.sha256.slice(0, 12)}:${pair}`);
+  const spectral = errorSourcesOf(fit, sample, dilution, `${inUse.sha256.slice(0, 12)}:${pair}`);
+  const sources = options.precision
+    ? [...spectral, ...repeatabilityBeyond(spectral, fit, sample, dilution, options.precision)]
+    : spectral;
   const { numbers, correlation, budget } = numbersOf(
     sample.side,
     pair,

@@ -125,3 +125,36 @@ function factor([aa, ab, bb]: readonly [number, number, number]): Effect[] {
     [0, Math.sqrt(Math.max(0, bb - (ab * ab) / aa))],
   ];
 }
+
+/**
+ * What repeated fillings scatter beyond what the budget of one filling already holds; nothing where the budget is the larger. Without this
+ * a plant whose people fill cells unevenly would be promised too much.
+ */
+export function repeatabilityBeyond(
+  sources: readonly ErrorSource[],
+  fit: PairFitOfSample,
+  sample: Sample,
+  dilution: number,
+  precision: { readonly stateOfCharge: number; readonly totalVanadium: number },
+): ErrorSource[] {
+  const [lower, higher] = speciesOfPair(fit.prepared.model.pair);
+  const low = fit.solution.lower * dilution;
+  const high = fit.solution.higher * dilution;
+  const total = low + high;
+  let shareVariance = 0;
+  let totalVariance = 0;
+  for (const { key, effect } of sources) {
+    if (!key.includes(sample.name)) continue;
+    const a = effect[lower] ?? 0;
+    const b = effect[higher] ?? 0;
+    shareVariance += ((low * b - high * a) / total ** 2) ** 2;
+    totalVariance += ((a + b) / total) ** 2;
+  }
+  const share = Math.sqrt(Math.max(0, precision.stateOfCharge ** 2 - shareVariance));
+  const relative = Math.sqrt(Math.max(0, precision.totalVanadium ** 2 - totalVariance));
+  const own = `repeatability:${sample.name}`;
+  return [
+    { source: 'repeatability', key: `${own}:S`, effect: { [lower]: -total * share, [higher]: total * share } },
+    { source: 'repeatability', key: `${own}:total`, effect: { [lower]: low * relative, [higher]: high * relative } },
+  ].filter(({ effect }) => Object.values(effect).some((value) => value !== 0));
+}

@@ -61,3 +61,10 @@ export function uncertaintyFromPrecision(
     }, 0),
   );
 }
+
+/** What an assay takes from a record: scatter of one filling. The mean oxidation state serves where a composite was repeated. */
+export function precisionForAssay(record: PrecisionRecord): { stateOfCharge: number; totalVanadium: number } {
+  const of = (quantity: PrecisionOfQuantity | undefined): number => (quantity ? uncertaintyFromPrecision(quantity) : 0);
+  const { stateOfCharge, averageOxidationState, totalVanadium } = record.quantities;
+  return { stateOfCharge: of(stateOfCharge ?? averageOxidationState), totalVanadium: of(totalVanadium) };
+}

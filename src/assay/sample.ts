@@ -42,6 +42,8 @@ export interface AssayOptions {
   readonly ceiling: number;
   /** keep curves for drawing in the result */
   readonly keepCurves: boolean;
+  /** what repeated fillings scatter: state of charge (1) and total vanadium (relative), standard deviations; absent where not measured */
+  readonly precision?: { readonly stateOfCharge: number; readonly totalVanadium: number };
   /** another `prepare`, for who assays many spectra on one axis and keeps the preparations; must give the same */
   readonly prepare?: typeof prepare;
 }

@@ -7,6 +7,8 @@ import {
   assayText,
   DEFAULT_ASSAY_OPTIONS,
   optionsFromInstrument,
+  precisionForAssay,
+  readPrecisionRecord,
   parseDilution,
   parseLength,
   parseSide,
@@ -37,6 +39,7 @@ interface AssayCliOptions extends ReadOptions {
   temperature?: number;
   blank?: string;
   instrument?: string;
+  precision?: string;
   column: string[];
   format: 'text' | 'json' | 'ndjson' | 'csv';
   report?: string;
@@ -59,6 +62,10 @@ export function register(program: Command): void {
     .option('--temperature <t>', 'of the cuvette, e.g. 25C', optionOf('--temperature', parseTemperature))
     .option('--blank <file>', 'blank to subtract')
     .option('--instrument <file>', 'record of the photometer from tankhue verify: sets priors and ceiling')
+    .option(
+      '--precision <file>',
+      'record of repeated fillings from tankhue precision: widens what the budget promises too much',
+    )
     .option('--column <name>', 'column of the file; may be repeated; all without it', collected, [])
     .option('--format <format>', 'text, json, ndjson or csv', 'text')
     .option('--report <file>', 'also write a report: one HTML file that carries its record')
@@ -85,7 +92,7 @@ async function run(command: Command, files: string[], options: AssayCliOptions):
     rows,
     (row) => shelf.spectrum(options.sheet ?? '', row),
     inUse,
-    assayOptionsOf(options.instrument),
+    assayOptionsOf(options),
   );
   problems.push(...unread);
   const document = assayDocumentOf(inUse, cuvettes);
@@ -171,7 +178,14 @@ function rowsOfFiles(
 }
 
 /** Priors and ceiling of a checked photometer; the usual ones without a record. */
-export function assayOptionsOf(file: string | undefined): AssayOptions {
-  if (file === undefined) return DEFAULT_ASSAY_OPTIONS;
-  return optionsFromInstrument(readInstrumentRecord(new TextDecoder().decode(readFileBytes(file)), file), file);
+export function assayOptionsOf(files: { readonly instrument?: string; readonly precision?: string }): AssayOptions {
+  const text = (file: string): string => new TextDecoder().decode(readFileBytes(file));
+  const { instrument, precision } = files;
+  const usual =
+    instrument === undefined
+      ? DEFAULT_ASSAY_OPTIONS
+      : optionsFromInstrument(readInstrumentRecord(text(instrument), instrument), instrument);
+  return precision === undefined
+    ? usual
+    : { ...usual, precision: precisionForAssay(readPrecisionRecord(text(precision), precision)) };
 }

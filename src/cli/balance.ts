@@ -21,6 +21,7 @@ import { MADE_BY, writeReport } from './reportFile.ts';
 interface BalanceOptions extends ReadOptions {
   calibration?: string;
   instrument?: string;
+  precision?: string;
   format: 'text' | 'json' | 'csv';
   report?: string;
 }
@@ -32,6 +33,10 @@ export function register(program: Command): void {
     .argument('<tanks>', 'sheet of tanks (CSV)')
     .option('--calibration <file>', 'calibration file; without it the shipped reference is used')
     .option('--instrument <file>', 'record of the photometer from tankhue verify: sets priors and ceiling')
+    .option(
+      '--precision <file>',
+      'record of repeated fillings from tankhue precision: widens what the budget promises too much',
+    )
     .option('--format <format>', 'text, json or csv', 'text')
     .option('--report <file>', 'also write a report: one HTML file that carries its record')
     .action((sheet: string, options: BalanceOptions) => run(command, sheet, options));
@@ -41,7 +46,9 @@ export function register(program: Command): void {
 async function run(command: Command, sheet: string, options: BalanceOptions): Promise<void> {
   if (!['text', 'json', 'csv'].includes(options.format))
     command.error(`expected --format text, json or csv; received ${options.format}`);
-  const inputs = [sheet, options.calibration, options.instrument].filter((file) => file !== undefined);
+  const inputs = [sheet, options.calibration, options.instrument, options.precision].filter(
+    (file) => file !== undefined,
+  );
   if (options.report !== undefined) requireWritable(options.report, inputs);
   const inUse = loadCalibration(options.calibration);
   const shelf = new SpectraShelf(readOptionsOf(options), options.format === 'text' ? () => {} : tell);
@@ -52,7 +59,7 @@ async function run(command: Command, sheet: string, options: BalanceOptions): Pr
     read.rows,
     (row) => shelf.spectrum(sheet, row),
     inUse,
-    assayOptionsOf(options.instrument),
+    assayOptionsOf(options),
   );
   problems.push(...unread);
   const document = balanceDocumentOf(inUse, read.rows, cuvettes);

@@ -1,4 +1,5 @@
 import { beforeAll, describe, expect, test } from 'vitest';
+import { assaySample, DEFAULT_ASSAY_OPTIONS } from '../../src/assay/assaySample.ts';
 import { combineReplicates } from '../../src/assay/combine.ts';
 import type { AssayResult } from '../../src/assay/result.ts';
 import type { Calibration } from '../../src/calibration/calibration.ts';
@@ -97,5 +98,25 @@ describe('combineReplicates', () => {
     expect(Math.abs(combined.stateOfCharge.value! - 0.5)).toBeLessThan(2.5 * combined.stateOfCharge.uncertainty!);
     const still = scans.map(({ seconds }) => ({ assay: filling(`s${seconds}`, 0.8, 0.8), seconds }));
     expect(combineReplicates('x', still)!.findings.map((finding) => finding.code)).not.toContain('air-exposure');
+  });
+});
+
+describe('precision of repeated fillings', () => {
+  test('widens what the budget promises too much, and leaves a wider budget alone', () => {
+    const absorbance = absorbanceOf('V2/V3', 0.8, 0.8, 0.1, random);
+    const sample = inventedSample('V2/V3', absorbance);
+    const inUse = { calibration, sha256: 'x', isReference: false };
+    const plain = assaySample(sample, inUse);
+    const wide = assaySample(sample, inUse, {
+      ...DEFAULT_ASSAY_OPTIONS,
+      precision: { stateOfCharge: 0.01, totalVanadium: 0 },
+    });
+    const narrow = assaySample(sample, inUse, {
+      ...DEFAULT_ASSAY_OPTIONS,
+      precision: { stateOfCharge: 1e-6, totalVanadium: 1e-6 },
+    });
+    expect(wide.stateOfCharge.uncertainty!).toBeGreaterThan(0.0099);
+    expect(wide.budget[0]!.source).toBe('repeatability');
+    expect(narrow.stateOfCharge.uncertainty).toBe(plain.stateOfCharge.uncertainty);
   });
 });
