@@ -16,7 +16,7 @@ export type { Standard } from './calibration/standard.ts';
 export { assaySample, DEFAULT_ASSAY_OPTIONS, type CalibrationInUse } from './assay/assaySample.ts';
 export type { AssayOptions, BlankState, Sample } from './assay/sample.ts';
 export type * from './assay/result.ts';
-export { findColumn, parseSpectra, parseSpectraChunks } from './io/spectra.ts';
+export { findColumn, parseSpectra, parseSpectraChunks, withHash } from './io/spectra.ts';
 export type { AxisUnit, Layout, OrdinateUnit, ReadOptions, Separator } from './io/readOptions.ts';
 export { understoodText, type SpectraRead, type Understood, type UnderstoodSpectrum } from './io/understood.ts';
 export {
@@ -29,7 +29,8 @@ export {
 } from './io/quantityText.ts';
 export { readSamplesSheet, type SamplesRow } from './io/samplesSheet.ts';
 export { readStandardsSheet, type StandardsRow } from './io/standardsSheet.ts';
-export { readTanksSheet, type TanksRow } from './io/tanksSheet.ts';
+export { readTanksSheet, TANKS_COLUMNS, type TanksRow } from './io/tanksSheet.ts';
+export { readSheet } from './io/sheet.ts';
 export { assayText } from './report/assayText.ts';
 export { assayCsv } from './report/assayCsv.ts';
 export { calibrationText } from './report/calibrationText.ts';
@@ -115,7 +116,7 @@ export { DISCLAIMER } from './tanks/cautions.ts';
 export { assayReport, balanceReport, calibrationReport } from './report/makeReport.ts';
 export { readBack } from './report/readBack.ts';
 export { ladderText } from './report/ladderText.ts';
-export { readAssayDocument } from './io/resultFile.ts';
+export { readAssayDocument, readBalanceDocument } from './io/resultFile.ts';
 export {
   assayDocumentOf,
   assayRows,

@@ -15,6 +15,7 @@ const VERBS: Readonly<Record<string, () => Promise<{ register: (program: Command
   plan: () => import('./plan.ts'),
   titrate: () => import('./titrate.ts'),
   mix: () => import('./mix.ts'),
+  page: () => import('./page.ts'),
 };
 
 /** 0 sound or caution · 1 a defect of ours · 2 wrong usage · 3 input cannot be read · 4 a result was withheld. Commands set 4 themselves. */

@@ -9,16 +9,18 @@
 import type { Estimate, Imbalance } from './imbalance.ts';
 import { isPresent, standing, type Limits, type Standing } from './limits.ts';
 
-export type Verdict =
-  | 'in-balance'
-  | 'watch'
-  | 'shifted'
-  | 'oxidised'
-  | 'over-reduced'
-  | 'shifted-and-oxidised'
-  | 'hidden'
-  | 'exchanged'
-  | 'undecided';
+export const VERDICTS = [
+  'in-balance',
+  'watch',
+  'shifted',
+  'oxidised',
+  'over-reduced',
+  'shifted-and-oxidised',
+  'hidden',
+  'exchanged',
+  'undecided',
+] as const;
+export type Verdict = (typeof VERDICTS)[number];
 
 export interface Judged {
   readonly watch: Standing;

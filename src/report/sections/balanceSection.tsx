@@ -11,7 +11,7 @@ import { standingText } from '../standingText.ts';
 import { Answer, Answers } from './answers.tsx';
 import { Findings } from './findings.tsx';
 
-const VERDICT_WORD: Readonly<Record<SystemBalance['verdict'], string>> = {
+export const VERDICT_WORD: Readonly<Record<SystemBalance['verdict'], string>> = {
   'in-balance': 'in balance',
   watch: 'watch',
   shifted: 'vanadium has shifted',
@@ -24,7 +24,7 @@ const VERDICT_WORD: Readonly<Record<SystemBalance['verdict'], string>> = {
 };
 
 /** How the verdict is tinted; the words say it too. */
-const VERDICT_TINT: Readonly<Record<SystemBalance['verdict'], 'sound' | 'caution' | 'withheld'>> = {
+export const VERDICT_TINT: Readonly<Record<SystemBalance['verdict'], 'sound' | 'caution' | 'withheld'>> = {
   'in-balance': 'sound',
   watch: 'caution',
   shifted: 'caution',
