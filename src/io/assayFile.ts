@@ -1,7 +1,7 @@
 import * as v from 'valibot';
 import type { ComparedAssay } from '../bench/titration/agreement.ts';
 import { PAIRS } from '../electrolyte/species.ts';
-import { finiteNumber, notNegative, readStrictJson } from './strictJson.ts';
+import { finiteNumber, notNegative, readStrictJson } from '../json/strictJson.ts';
 
 const quantity = v.object({ value: v.nullable(finiteNumber), uncertainty: v.nullable(notNegative) });
 

@@ -1,6 +1,6 @@
 import * as v from 'valibot';
 import type { InstrumentRecord } from '../assay/instrumentRecord.ts';
-import { finding, finiteNumber, measured, notNegative, readStrictJson } from './strictJson.ts';
+import { finding, finiteNumber, measured, notNegative, readStrictJson } from '../json/strictJson.ts';
 
 const verdict = v.picklist(['passed', 'undecided', 'failed']);
 const positive = v.pipe(finiteNumber, v.gtValue(0, 'expected more than 0'));

@@ -1,6 +1,6 @@
 import * as v from 'valibot';
 import type { PrecisionRecord } from '../assay/precisionRecord.ts';
-import { finding, finiteNumber, notNegative, readStrictJson } from './strictJson.ts';
+import { finding, finiteNumber, notNegative, readStrictJson } from '../json/strictJson.ts';
 
 const figure = v.object({
   standardDeviation: notNegative,

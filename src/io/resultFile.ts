@@ -1,9 +1,9 @@
 import * as v from 'valibot';
 import type { AssayDocument } from '../assay/result.ts';
 import { PAIRS, SIDES, SPECIES } from '../electrolyte/species.ts';
+import { finding, finiteNumber, notNegative, readStrictJson } from '../json/strictJson.ts';
 import type { BalanceDocument } from '../tanks/balance.ts';
 import { VERDICTS } from '../tanks/verdict.ts';
-import { finding, finiteNumber, notNegative, readStrictJson } from './strictJson.ts';
 
 const quantity = v.object({ value: v.nullable(finiteNumber), uncertainty: v.nullable(notNegative) });
 const numbers = {

@@ -5,6 +5,7 @@ import { describe, expect, test } from 'vitest';
 // Lowest first; a file may import from its own row and from rows before it.
 const ROWS = [
   ['errors', 'units', 'finding'],
+  ['json'],
   ['numerics'],
   ['spectrum'],
   ['electrolyte'],
@@ -21,7 +22,8 @@ const ROWS = [
 const LIBRARIES: ReadonlyArray<readonly [RegExp, RegExp]> = [
   [/^node:/, /^(io\/files\.ts|cli\/.+)$/],
   [/^(ml-|@stdlib\/|pure-rand)/, /^numerics\//],
-  [/^(papaparse|valibot)/, /^(io|calibration)\//],
+  [/^papaparse/, /^io\//],
+  [/^valibot/, /^(io|calibration|json)\//],
   [/^(commander|cli-progress)/, /^cli\//],
   [/^(preact|d3-)/, /^(report|page)\//],
 ];

@@ -33,16 +33,16 @@ test('fields of a later version are let through', () => {
 });
 
 test.each([
-  ['json-broken', '{', 'photometer.json'],
-  ['field-wrong', JSON.stringify({ ...record, schema: 'tankhue/assay/1' }), 'photometer.json $.schema'],
+  ['json-broken', '{', 'photometer.json:1:2'],
+  ['wrong-schema', JSON.stringify({ ...record, schema: 'tankhue/assay/1' }), 'photometer.json $.schema'],
   ['field-wrong', JSON.stringify({ ...record, offsetPrior: -1 }), 'photometer.json $.offsetPrior'],
   [
-    'field-wrong',
+    'not-finite',
     JSON.stringify(record).replace(/"offsetPrior":[^,]+/, '"offsetPrior":1e999'),
     'photometer.json $.offsetPrior',
   ],
   [
-    'field-wrong',
+    'field-missing',
     JSON.stringify({ ...record, wavelengthShift: { value: 1 } }),
     'photometer.json $.wavelengthShift.uncertainty',
   ],

@@ -123,7 +123,7 @@ describe('reading a report back', () => {
 
   test.each([
     ['{', 'json-broken'],
-    ['{"schema":"tankhue/balance/1","calibration":{"name":"a","sha256":""},"assays":[]}', 'field-wrong'],
+    ['{"schema":"tankhue/balance/1","calibration":{"name":"a","sha256":""},"assays":[]}', 'wrong-schema'],
     [JSON.stringify(both).replace('"negative"', '"left"'), 'field-wrong'],
     [JSON.stringify(both).replace('"value":1.6,', '"value":"1.6",'), 'field-wrong'],
     [JSON.stringify(both).replace('"uncertainty":0.018', '"uncertainty":-1'), 'field-wrong'],
