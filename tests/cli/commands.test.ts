@@ -203,14 +203,23 @@ describe('balance', () => {
     const { stdout } = run(['balance', `examples/${plant}/tanks.csv`, ...more, '--format', 'json']);
     const document = JSON.parse(stdout) as {
       schema: string;
-      systems: { verdict: string; netOxidation: { value: number; uncertainty: number; unit: string } }[];
+      systems: {
+        verdict: string;
+        netOxidation: { value: number; uncertainty: number; unit: string };
+        stateOfCharge: Record<'negative' | 'positive', { value: number; uncertainty: number }>;
+      }[];
     };
     const { truth } = JSON.parse(readFileSync(`examples/${plant}/truth.json`, 'utf8')) as {
-      truth: { verdict: string; netOxidation_mol: number };
+      truth: { verdict: string; netOxidation_mol: number; stateOfCharge: [number, number] };
     };
     expect(document.schema).toBe('tankhue/balance/1');
     const [system] = document.systems;
     expect(system!.verdict).toBe(truth.verdict);
+    // A calibration that is older than the code that reads it would show here first.
+    for (const [i, side] of (['negative', 'positive'] as const).entries()) {
+      const { value, uncertainty } = system!.stateOfCharge[side];
+      expect(Math.abs(value - truth.stateOfCharge[i]!)).toBeLessThan(3.3 * uncertainty);
+    }
     expect(system!.netOxidation.unit).toBe('mol');
     expect(Math.abs(system!.netOxidation.value - truth.netOxidation_mol)).toBeLessThan(
       2.5 * system!.netOxidation.uncertainty,
