@@ -1,7 +1,8 @@
 // What        Propagation of uncertainty through any functions of correlated quantities, by first derivatives.
 // Equation    U_y = J U_x Jᵀ, J by central differences; ν_eff = u⁴/Σ(u_i⁴/ν_i).
-// Why so      Differences need no algebra by hand, and several results at once keep the covariance between them. The step is ε^⅓ of the
-//             larger of value and uncertainty, where cutting and rounding errors of a central difference are about equal.
+// Why so      Differences need no algebra by hand, and several results at once keep the covariance between them. The step is the
+//             larger of ε^⅓ of the value, where cutting and rounding errors are about equal, and a thousandth of the uncertainty, over
+//             which the function must be straight anyway.
 // Valid for   functions that are nearly straight over ± u; monteCarlo.ts tells whether they are.
 // Units       covariance: product of the units of its two quantities.
 // Source      JCGM 100:2008 (GUM), 5.2.2 and G.4.1.
@@ -27,7 +28,7 @@ export interface PropagatedTogether {
   readonly sensitivities: number[][];
 }
 
-const STEP = Math.cbrt(Number.EPSILON);
+const STEP = { ofValue: Math.cbrt(Number.EPSILON), ofUncertainty: 1e-3 };
 
 /** @throws TankhueError `length-differs`, `not-finite`, `variance-negative` */
 export function propagate(f: (x: readonly number[]) => number, means: readonly number[], covariance: Rows): Propagated {
@@ -60,7 +61,7 @@ export function propagateTogether(
   const columns = means.map((mean, i) => {
     const u = Math.sqrt(covariance[i]![i]!);
     if (u === 0) return values.map(() => 0);
-    const h = STEP * Math.max(Math.abs(mean), u);
+    const h = Math.max(STEP.ofValue * Math.abs(mean), STEP.ofUncertainty * u);
     const moved = (by: number): readonly number[] => f(means.map((x, k) => (k === i ? x + by : x)));
     const [up, down] = [moved(h), moved(-h)];
     const width = mean + h - (mean - h);
