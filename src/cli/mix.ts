@@ -1,11 +1,13 @@
 import type { Command } from 'commander';
 import {
+  benchReport,
   blend,
   dilutionSeries,
   DISCLAIMER,
   dissolve,
   electrolyse,
   findStock,
+  mixPicture,
   mixText,
   NO_SPECTRUM,
   parseComposition,
@@ -32,6 +34,7 @@ import { optionOf, tell } from './options.ts';
 interface OutputOptions {
   class: GlassClass;
   standards?: string;
+  report?: string;
   format: 'text' | 'json';
 }
 
@@ -99,6 +102,7 @@ const withOutput = (command: Command): Command =>
   command
     .option('--class <class>', 'class of pipettes and flasks: A or B', 'A')
     .option('--standards <file>', 'write the labels as rows of a standards sheet')
+    .option('--report <file>', 'write steps and portions as one HTML file')
     .option('--format <format>', 'text or json', 'text');
 
 function registerBlend(mix: Command): void {
@@ -305,10 +309,10 @@ function finish(
 ): void {
   const document: MixDocument = { schema: 'tankhue/mix/1', task, mixtures, stages, disclaimer: DISCLAIMER };
   const rows = mixtures.flatMap(({ standardsRow }) => (standardsRow ? [standardsRow] : []));
-  if (options.standards !== undefined) {
-    requireWritable(options.standards, inputs);
-    writeWhole(options.standards, standardsRowsCsv(rows), inputs);
-  }
+  for (const out of [options.standards, options.report]) if (out !== undefined) requireWritable(out, inputs);
+  if (options.standards !== undefined) writeWhole(options.standards, standardsRowsCsv(rows), inputs);
+  if (options.report !== undefined)
+    writeWhole(options.report, benchReport('Mixing', mixText(document), [mixPicture(mixtures)]), inputs);
   process.stdout.write(options.format === 'json' ? `${JSON.stringify(document, null, 1)}\n` : mixText(document));
   if (mixtures.some(({ state }) => state === 'withheld')) process.exitCode = 4;
 }

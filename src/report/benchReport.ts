@@ -20,7 +20,7 @@ export function benchReport(title: string, text: string, pictures: readonly Pict
 <title>${escapeXml(title)}</title>
 <style>
 body { font: 16px/1.5 system-ui, sans-serif; color: #1a1a1a; background: #fff; margin: 2rem auto; max-width: 62rem; padding: 0 1rem }
-pre { font: 14px/1.45 ui-monospace, monospace; white-space: pre-wrap; background: #f6f6f3; padding: 1rem; border-left: 4px solid #3b5f7a }
+pre { font: 14px/1.45 ui-monospace, monospace; white-space: pre-wrap; overflow-wrap: anywhere; background: #f6f6f3; padding: 1rem; border-left: 4px solid #3b5f7a }
 figure { margin: 2rem 0 }
 svg { width: 100%; height: auto }
 figcaption { color: #444 }

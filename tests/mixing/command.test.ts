@@ -54,6 +54,15 @@ describe('tankhue mix', () => {
     ]);
   });
 
+  test('when a report is asked for then one HTML file holds the steps and the portions', () => {
+    const words = ['--target', 'V4=0.4,V5=0.4', '--volume', '100mL', '--report', at('mix.html')];
+    expect(tankhue('mix', 'blend', at('stocks.csv'), ...words).status).toBe(0);
+    const html = readFileSync(at('mix.html'), 'utf8');
+    expect(html).toContain('fill to the mark');
+    expect(html).toContain('IV 25 mL');
+    expect(html).not.toMatch(/NaN|undefined|<script/);
+  });
+
   test('when a state is wanted that no stock reaches then the nearest is shown and the missing stock named', () => {
     const { status, stdout } = tankhue('mix', 'blend', at('stocks.csv'), '--target', 'V2=0.8', '--volume', '50mL');
     expect(status).toBe(4);

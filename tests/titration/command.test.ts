@@ -91,6 +91,38 @@ describe('tankhue titrate', () => {
     expect(rows[0]!.concentrationUncertainty).toBeGreaterThan(0.001);
   });
 
+  test('when a sheet of standards is relabelled then its own cells stay and the titrated label comes in', () => {
+    const sheet = `standard,file,column,path_mm,V4_mol_L,V5_mol_L,u_mol_L,preparation,role,colour
+other,o.csv,x,1,0.8,0.8,0.01,o,calibration,dark
+pos,pos.csv,y,0.5,0.6,1.0,0.03,mixed,check,dark
+`;
+    const at = folderWith({ 'day.csv': day, 'mixed.csv': sheet });
+    const { status, stderr } = tankhue(
+      'titrate',
+      at('day.csv'),
+      '--relabel',
+      at('mixed.csv'),
+      '--standards',
+      at('out.csv'),
+    );
+    expect(status).toBe(0);
+    expect(stderr).toContain('pos: label was V4 0.6, V5 1.0, is V4 0.5');
+    const [, other, pos, neg] = readFileSync(at('out.csv'), 'utf8').split('\n');
+    expect(other).toBe('other,o.csv,x,1,0.8,0.8,0.01,o,calibration,dark,,');
+    expect(pos).toMatch(/^pos,pos\.csv,y,0\.5,0\.5\d+,1\.0\d+,0\.00\d+,pos,check,dark,0,0$/);
+    expect(neg).toMatch(/^neg,,,/);
+  });
+
+  test('when a report is asked for then one HTML file holds text and a picture of every curve', () => {
+    const at = folderWith({ 'day.csv': day });
+    const { status } = tankhue('titrate', at('day.csv'), '--report', at('report.html'));
+    expect(status).toBe(0);
+    const html = readFileSync(at('report.html'), 'utf8');
+    expect(html.match(/<svg /g)?.length).toBe(4);
+    expect(html).toContain('II/III with oxidant');
+    expect(html).not.toMatch(/NaN|undefined|<script|https?:\/\/(?!www\.w3\.org)/);
+  });
+
   test.each([
     [0.605, 'they agree', true],
     [0.66, 'they do NOT agree', false],
