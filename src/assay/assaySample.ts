@@ -107,7 +107,7 @@ const freedomOf = (source: ErrorSource, fit: PairFitOfSample): number =>
 
 const offsetOf = (fit: PairFitOfSample): number => fit.faults.find((fault) => fault.name === 'offset')?.amplitude ?? 0;
 
-const referenceFindings = (inUse: CalibrationInUse): Finding[] =>
+export const referenceFindings = (inUse: CalibrationInUse): Finding[] =>
   inUse.isReference
     ? [
         {

@@ -14,7 +14,7 @@ const SCORE_LIMIT = 3.2;
 /** The path shows in one direction only, and only where there is a complex. */
 const PATH_LIMIT = 2.3;
 export const MATCH_CAUTION = 3.3;
-const MATCH_WITHHOLD = 6;
+export const MATCH_WITHHOLD = 6;
 /** Effects on the state of charge below one point never withhold it. */
 const SMALLEST_MOVE = 0.01;
 const INFORMATION_NEEDED = 0.6;

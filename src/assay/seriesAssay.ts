@@ -1,37 +1,21 @@
 // What        A series of spectra of one cell on one axis, each with its state of charge and every doubt about it.
-// Equation    each row: fast solver of the side's own pair and a screen (masked points, match, uncertainty, share, total);
-//             a full assay where the screen changes its mind or the match jumps, and at least every 100th row.
+// Equation    each row: fast solver of the side's own pair and a screen; then the verdict of the nearest of the last full assays, when it is
+//             near (same doubts; match, state of charge and ln total within 1, 0.05 and 0.1) and at most 100 rows old; else a full assay,
+//             one in 100 rows at most; else the screen's own verdict.
 // Why so      A full assay costs a thousand times the fast solver. Neighbours of a series resemble each other, so what a full assay says
-//             of one row holds for those after it until the screen sees a difference.
+//             of one row holds for rows like it, also in a series that goes back and forth.
 // Valid for   one side, one path, one dilution, one axis. A doubt that the screen cannot see shows up to 100 rows late.
 // Units       mol/L of the tank, state of charge 1.
 // Source      ours.
 import type { Finding } from '../finding.ts';
-import { PAIR_OF_SIDE, type Pair, type Side } from '../electrolyte/species.ts';
+import { PAIR_OF_SIDE, type Pair } from '../electrolyte/species.ts';
 import { TankhueError } from '../errors.ts';
-import { averager, axisMap } from '../estimation/kernelAxis.ts';
 import { prepare, type Prepared } from '../estimation/prepare.ts';
-import { rowSolver, type RowSolver } from '../estimation/rowSolver.ts';
 import { makeSpectrum } from '../spectrum/spectrum.ts';
-import { assaySample, type CalibrationInUse } from './assaySample.ts';
-import { MATCH_CAUTION } from './opticalFindings.ts';
-import { matchOf } from './pairFit.ts';
+import { assaySample, referenceFindings, type CalibrationInUse } from './assaySample.ts';
 import type { AssayState, Quantity } from './result.ts';
-import { ASSUMED_DILUTION_UNCERTAINTY, type AssayOptions, type Sample } from './sample.ts';
-import { ABOVE, UNCERTAIN_CAUTION, UNCERTAIN_WITHHOLD } from './sampleFindings.ts';
-
-/** What all spectra of a series share. */
-export interface SeriesCuvette {
-  readonly side: Side;
-  /** cm */
-  readonly pathLength: number;
-  /** cm; null where nobody said */
-  readonly pathUncertainty: number | null;
-  /** ≥ 1 */
-  readonly dilution: number;
-  /** K; null where nobody said */
-  readonly temperature: number | null;
-}
+import type { AssayOptions, Sample } from './sample.ts';
+import { screenFindings, seriesScreen, type Screened, type SeriesCuvette } from './seriesScreen.ts';
 
 /** One row. Numbers are null where they are withheld. */
 export interface SeriesResult {
@@ -43,8 +27,8 @@ export interface SeriesResult {
   /** standard deviations of the misfit above that of left-out standards */
   readonly match: number | null;
   readonly findings: readonly Finding[];
-  /** the row before this one, counted in rows, whose full assay the findings come from; 0 for its own */
-  readonly assayedBefore: number;
+  /** rows since the full assay that the findings come from, 0 for its own; null where they are the screen's */
+  readonly assayedBefore: number | null;
 }
 
 export interface SeriesAssay {
@@ -54,25 +38,16 @@ export interface SeriesAssay {
   assay(readings: Float64Array, row: number): SeriesResult;
 }
 
-/** Rows from one full assay to the next when nothing changes. */
+/** Rows after which a full assay is renewed. */
 const FULL_EVERY = 100;
-/** Change of the match since the last full assay that asks for another; from row to row it moves by a tenth. */
-const JUMP = 1;
+/** How far a row may be from the one that was assayed: from row to row the match moves by a tenth. */
+const NEAR = { match: 1, stateOfCharge: 0.05, logTotal: 0.1 } as const;
+const REMEMBERED = 8;
+/** Full assays that a piece may begin with, may save up, and earns with each row: a series that flickers must not take for ever. */
+const ALLOWANCE = { begin: 2, most: 4, earned: 1 / 100 } as const;
 /** Masks that are kept prepared. */
 const MOST_MASKS = 24;
 const NOTHING: Quantity = { value: null, uncertainty: null };
-
-interface Screened {
-  /** which doubts the screen has, one bit each */
-  readonly doubts: number;
-  readonly stateOfCharge: number;
-  readonly uncertainty: number;
-  readonly total: number;
-  readonly totalUncertainty: number;
-  readonly match: number;
-}
-
-const DOUBT = { masked: 1, match: 2, uncertain: 4, unsure: 8, share: 16, total: 32, failed: 64 } as const;
 
 /**
  * @param wavelength nm, ascending
@@ -84,147 +59,97 @@ export function seriesAssay(
   wavelength: Float64Array,
   options: AssayOptions,
 ): SeriesAssay {
-  const screen = screenOf(inUse, cuvette, wavelength, options);
+  const screen = seriesScreen(inUse, cuvette, wavelength, options);
   const full = fullAssay(inUse, cuvette, wavelength, options);
-  let last: SeriesResult | null = null;
-  let lastDoubts = 0;
-  let since = 0;
+  const standing = referenceFindings(inUse);
+  const own = PAIR_OF_SIDE[cuvette.side];
+  let assayed: Assayed[] = [];
+  let rows = 0;
+  let allowance: number = ALLOWANCE.begin;
+  /** One array for each set of doubts, so that rows that share findings share them. */
+  const verdicts = new Map<number, SeriesResult>();
+  const verdictOf = (screened: Screened): SeriesResult => {
+    if (!verdicts.has(screened.doubts)) {
+      const findings = [...screenFindings(screened), ...standing];
+      verdicts.set(screened.doubts, { ...EMPTY, state: stateOf(findings), pair: own, findings });
+    }
+    return verdicts.get(screened.doubts)!;
+  };
   return {
     begin: () => {
-      last = null;
+      assayed = [];
+      allowance = ALLOWANCE.begin;
     },
     assay: (readings, row) => {
       const screened = screen(readings, row * wavelength.length);
-      since += 1;
-      if (
-        last === null ||
-        screened.doubts !== lastDoubts ||
-        Math.abs(screened.match - (last.match ?? NaN)) > JUMP ||
-        since >= FULL_EVERY ||
-        last.pair !== PAIR_OF_SIDE[cuvette.side]
-      ) {
-        last = full(readings.slice(row * wavelength.length, (row + 1) * wavelength.length));
-        lastDoubts = screened.doubts;
-        since = 0;
-        return last;
+      rows += 1;
+      allowance = Math.min(ALLOWANCE.most, allowance + ALLOWANCE.earned);
+      const fresh = nearest(
+        assayed.filter((one) => rows - one.at < FULL_EVERY),
+        screened,
+      );
+      const like = fresh ?? nearest(assayed, screened);
+      if (!fresh && allowance >= 1) {
+        allowance -= 1;
+        const result = full(readings.slice(row * wavelength.length, (row + 1) * wavelength.length));
+        assayed = [{ screened, result, at: rows }, ...assayed.slice(0, REMEMBERED - 1)];
+        return result;
       }
-      const withheld = last.state === 'withheld';
-      return {
-        ...last,
-        stateOfCharge: withheld ? NOTHING : { value: screened.stateOfCharge, uncertainty: screened.uncertainty },
-        totalVanadium: withheld ? NOTHING : { value: screened.total, uncertainty: screened.totalUncertainty },
-        match: Number.isFinite(screened.match) ? screened.match : null,
-        assayedBefore: since,
-      };
+      const verdict = like ? like.result : verdictOf(screened);
+      const numbers = numbersOf(screened, verdict.state);
+      return { ...verdict, ...numbers, assayedBefore: like ? rows - like.at : null };
     },
   };
 }
 
-/** The fast look at one row. */
-function screenOf(
-  { calibration }: CalibrationInUse,
-  cuvette: SeriesCuvette,
-  wavelength: Float64Array,
-  options: AssayOptions,
-): (readings: Float64Array, offset: number) => Screened {
-  const own = PAIR_OF_SIDE[cuvette.side];
-  const record = calibration.pairs.find((pair) => pair.pair === own);
-  if (!record)
-    throw new TankhueError(
-      'not-calibrated',
-      `expected a calibration that holds ${own} for the ${cuvette.side} side; received ${calibration.pairs.map((pair) => pair.pair).join(', ')}`,
-      '--calibration',
-      'use a calibration of this side',
-    );
-  const map = axisMap(wavelength, record.model.wavelength, calibration.grid.step);
-  const { means, average } = averager(map);
-  const grid = Int32Array.from(map.reached.keys()).filter((g) => map.reached[g]);
-  const rowCuvette = {
-    pathLength: cuvette.pathLength,
-    priors: options.priors,
-    ...(cuvette.pathUncertainty === null ? {} : { pathUncertainty: cuvette.pathUncertainty / cuvette.pathLength }),
-  };
-  const whole = rowSolver(record, map.reached, rowCuvette);
-  const masks = new Map<string, { solver: RowSolver; used: Int32Array; means: Float64Array } | null>();
-  const underMask = (): { solver: RowSolver; used: Int32Array; means: Float64Array } | null => {
-    const used = Int32Array.from(means.keys()).filter((l) => means[l]! <= options.ceiling);
-    const key = used.join();
-    if (!masks.has(key)) {
-      if (masks.size >= MOST_MASKS) masks.delete(masks.keys().next().value!);
-      const usable = new Uint8Array(record.model.wavelength.length);
-      for (const l of used) usable[grid[l]!] = 1;
-      masks.set(
-        key,
-        solverOrNull(() => ({
-          solver: rowSolver(record, usable, rowCuvette),
-          used,
-          means: new Float64Array(used.length),
-        })),
-      );
-    }
-    return masks.get(key)!;
-  };
-  const { domain } = record;
-  const relativeDilution = cuvette.dilution === 1 ? 0 : ASSUMED_DILUTION_UNCERTAINTY;
-
-  return (readings, offset) => {
-    average(readings, offset);
-    let largest = -Infinity;
-    let masked = false;
-    for (let l = 0; l < means.length; l++) {
-      if (means[l]! > largest && means[l]! <= options.ceiling) largest = means[l]!;
-      if (!(means[l]! <= options.ceiling)) masked = true;
-    }
-    const part = masked ? underMask() : null;
-    if (masked && part === null) return FAILED;
-    const solver = part ? part.solver : whole;
-    if (part) part.used.forEach((l, i) => (part.means[i] = means[l]!));
-    solver.solve(part ? part.means : means);
-    const lower = solver.theta[0]!;
-    const higher = solver.theta[1]!;
-    const total = lower + higher;
-    const share = higher / total;
-    const brightness = Math.max(1, largest / domain.absorbance);
-    const leverage = solver.leverage();
-    const uncertainty = solver.shareUncertainty(leverage, brightness);
-    const reduced = solver.chiSquare() / (brightness * brightness * (1 + leverage)) / solver.degreesOfFreedom;
-    const match = matchOf(record, reduced);
-    const slack = 0.05 + 2 * uncertainty;
-    const outside = !(share > domain.share[0] - slack && share < domain.share[1] + slack);
-    return {
-      doubts:
-        (masked ? DOUBT.masked : 0) |
-        (match <= MATCH_CAUTION ? 0 : DOUBT.match) |
-        (uncertainty <= UNCERTAIN_CAUTION ? 0 : DOUBT.uncertain) |
-        (uncertainty <= UNCERTAIN_WITHHOLD ? 0 : DOUBT.unsure) |
-        (outside ? DOUBT.share : 0) |
-        (total <= ABOVE * domain.total[1] && total > 0 ? 0 : DOUBT.total),
-      stateOfCharge: own === 'V2/V3' ? 1 - share : share,
-      uncertainty,
-      total: total * cuvette.dilution,
-      totalUncertainty: cuvette.dilution * Math.hypot(solver.totalUncertainty(leverage), relativeDilution * total),
-      match,
-    };
-  };
+interface Assayed {
+  readonly screened: Screened;
+  readonly result: SeriesResult;
+  readonly at: number;
 }
 
-const FAILED: Screened = {
-  doubts: DOUBT.failed,
-  stateOfCharge: NaN,
-  uncertainty: NaN,
-  total: NaN,
-  totalUncertainty: NaN,
-  match: NaN,
-};
-
-/** Too few wavelengths are a doubt of this row, not the end of the series. */
-function solverOrNull<T>(make: () => T): T | null {
-  try {
-    return make();
-  } catch (error) {
-    if (error instanceof TankhueError) return null;
-    throw error;
+/** The full assay that speaks for a row; where it found another pair than the side's own, it speaks for nobody but itself. */
+function nearest(assayed: readonly Assayed[], row: Screened): Assayed | null {
+  let best: Assayed | null = null;
+  let least = 1;
+  for (const one of assayed) {
+    if (one.screened.doubts !== row.doubts || one.result.pair !== row.pair) continue;
+    const distance = distanceBetween(one.screened, row);
+    if (distance > least) continue;
+    best = one;
+    least = distance;
   }
+  return best;
+}
+
+/** 1 where a row is just near enough. Rows whose numbers mean nothing are near when they share their doubts. */
+function distanceBetween(a: Screened, b: Screened): number {
+  if (a.meaningless || b.meaningless) return a.meaningless && b.meaningless ? 0 : Infinity;
+  return Math.max(
+    Math.abs(a.match - b.match) / NEAR.match,
+    Math.abs(a.stateOfCharge - b.stateOfCharge) / NEAR.stateOfCharge,
+    Math.abs(Math.log(a.total / b.total)) / NEAR.logTotal,
+  );
+}
+
+const EMPTY = { stateOfCharge: NOTHING, totalVanadium: NOTHING, match: null, assayedBefore: null } as const;
+
+function stateOf(findings: readonly Finding[]): AssayState {
+  if (findings.some((one) => one.severity === 'withhold')) return 'withheld';
+  return findings.some((one) => one.severity === 'caution') ? 'caution' : 'sound';
+}
+
+function numbersOf(
+  screened: Screened,
+  state: AssayState,
+): Pick<SeriesResult, 'stateOfCharge' | 'totalVanadium' | 'match'> {
+  const match = Number.isFinite(screened.match) ? screened.match : null;
+  if (state === 'withheld') return { stateOfCharge: NOTHING, totalVanadium: NOTHING, match };
+  return {
+    stateOfCharge: { value: screened.stateOfCharge, uncertainty: screened.uncertainty },
+    totalVanadium: { value: screened.total, uncertainty: screened.totalUncertainty },
+    match,
+  };
 }
 
 /** The full assay of one row, preparations kept. */

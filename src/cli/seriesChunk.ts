@@ -2,7 +2,8 @@ import type { Finding } from '../finding.ts';
 import type { CalibrationInUse } from '../assay/assaySample.ts';
 import type { AssayState } from '../assay/result.ts';
 import type { AssayOptions } from '../assay/sample.ts';
-import { seriesAssay, type SeriesAssay, type SeriesCuvette, type SeriesResult } from '../assay/seriesAssay.ts';
+import { seriesAssay, type SeriesAssay, type SeriesResult } from '../assay/seriesAssay.ts';
+import type { SeriesCuvette } from '../assay/seriesScreen.ts';
 import type { Pair } from '../electrolyte/species.ts';
 import { TankhueError } from '../errors.ts';
 import { jsonRow, type WrittenAxis } from '../io/ndjsonRows.ts';
@@ -50,7 +51,7 @@ export interface SeriesPieceResults {
   /** index into `diagnoses` */
   readonly diagnosis: Int32Array;
   readonly diagnoses: readonly Diagnosis[];
-  /** rows since the full assay that the diagnosis comes from */
+  /** rows since the full assay that the diagnosis comes from; −1 where it is the screen's */
   readonly assayedBefore: Int32Array;
   /** index into `axes`, each in words */
   readonly axis: Int32Array;
@@ -193,6 +194,6 @@ function columnsOf(
     match: column((one) => one.match),
     diagnosis,
     diagnoses,
-    assayedBefore: Int32Array.from(found, (one) => one.assayedBefore),
+    assayedBefore: Int32Array.from(found, (one) => one.assayedBefore ?? -1),
   };
 }

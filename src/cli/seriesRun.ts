@@ -233,7 +233,7 @@ class Book {
           uncertainty: numberOrNull(results.totalUncertainty[i]!),
         },
         match,
-        assayed: this.row - results.assayedBefore[i]!,
+        assayed: results.assayedBefore[i]! < 0 ? null : this.row - results.assayedBefore[i]!,
         findings,
       };
       this.count(record, events);

@@ -18,8 +18,8 @@ export interface SeriesRecord {
   /** mol/L of the tank */
   readonly totalVanadium: Quantity;
   readonly match: number | null;
-  /** row whose full assay the findings come from */
-  readonly assayed: number;
+  /** row whose full assay the findings come from; null where only the fast screen has seen this one */
+  readonly assayed: number | null;
   readonly findings: readonly Finding[];
 }
 

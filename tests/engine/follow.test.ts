@@ -148,6 +148,14 @@ describe('what happens in a series', () => {
     expect(run.stderr).toContain('row 751: results again');
   });
 
+  test('bubbles in every other row: each is judged by itself, however many there are', () => {
+    const text = Array.from({ length: 400 }, (_, i) => line(i, 0.5, i % 2 === 1 ? { bubble: 0.35 } : {})).join('');
+    const found = records(follow(file(head() + text)).stdout);
+    expectWhole(found, 400);
+    expect(found.filter((record, i) => (record.state === 'withheld') !== (i % 2 === 1))).toEqual([]);
+    for (const record of found.filter((_, i) => i % 2 === 0)) expect(record.stateOfCharge.value).toBeCloseTo(0.5, 1);
+  });
+
   test('a lamp that is changed: the first row after it has its cause, and the step is told', () => {
     const before = Array.from({ length: 157 }, (_, i) => line(i, 0.5)).join('');
     const after = Array.from({ length: 200 }, (_, i) => line(157 + i, 0.5, { offset: 0.02, slope: 0.01 })).join('');
