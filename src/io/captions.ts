@@ -1,6 +1,6 @@
 import { splitCells } from './cells.ts';
 import type { AxisUnit, OrdinateUnit, Separator } from './readOptions.ts';
-import { axisUnitOf, bareUnitOf, isUnitOnly, ordinateUnitOf, statedOrdinateUnit } from './unitWords.ts';
+import { axisUnitOf, bareUnitOf, isUnitOnly, ordinateUnitOf, statedAxisUnit, statedOrdinateUnit } from './unitWords.ts';
 
 const isRule = (line: string): boolean => /^[-=_~#*+\s|]*$/.test(line);
 
@@ -56,12 +56,19 @@ const firstKnown = <Unit>(captions: readonly string[], unitOf: (caption: string)
   return null;
 };
 
+/** The unit that lines state, where all that state one agree. */
+function onlyUnit<Unit>(lines: readonly string[], unitOf: (line: string) => Unit | null): Unit | null {
+  const units = new Set(lines.map(unitOf).filter((unit) => unit !== null));
+  return units.size === 1 ? [...units][0]! : null;
+}
+
 /** What stands above a table: captions of its columns, and prose. */
 export class Captions {
   readonly #rows: readonly (readonly string[])[];
   readonly #prose: readonly string[];
-  /** the only unit of values that the prose states */
-  readonly #stated: OrdinateUnit | null;
+  /** the only units that the prose states */
+  readonly #statedOrdinate: OrdinateUnit | null;
+  readonly #statedAxis: AxisUnit | null;
 
   /**
    * @param above the lines above the numbers, all of them
@@ -71,8 +78,8 @@ export class Captions {
     const { rows, first } = rowsAbove(above, separator, width);
     this.#rows = rows;
     this.#prose = above.slice(0, first);
-    const stated = new Set(this.#prose.map(statedOrdinateUnit).filter((unit) => unit !== null));
-    this.#stated = stated.size === 1 ? [...stated][0]! : null;
+    this.#statedOrdinate = onlyUnit(this.#prose, statedOrdinateUnit);
+    this.#statedAxis = onlyUnit(this.#prose, statedAxisUnit);
   }
 
   /** Captions of a column from top to bottom, empty ones left out. */
@@ -84,13 +91,18 @@ export class Captions {
     return firstKnown(this.of(column), axisUnitOf);
   }
 
+  /** What the prose says of the axis, where no caption does. */
+  get statedAxisUnit(): AxisUnit | null {
+    return this.#statedAxis;
+  }
+
   /** The axis of a table whose axis runs along its first line: the corner names it, or a line above. */
   axisUnitAlong(corner: string): AxisUnit | null {
-    return firstKnown([corner, ...this.#prose.slice(-MOST_ROWS)], axisUnitOf);
+    return firstKnown([corner, ...this.#prose.slice(-MOST_ROWS)], axisUnitOf) ?? this.#statedAxis;
   }
 
   ordinateUnitAlong(corner: string): OrdinateUnit | null {
-    return firstKnown([corner, ...this.#prose.slice(-MOST_ROWS)], ordinateUnitOf) ?? this.#stated;
+    return firstKnown([corner, ...this.#prose.slice(-MOST_ROWS)], ordinateUnitOf) ?? this.#statedOrdinate;
   }
 
   /** True where every one of the columns has a caption that is nothing but a unit. */
@@ -107,7 +119,7 @@ export class Captions {
     return (
       firstKnown(captions, ordinateUnitOf) ??
       (unitsThroughout ? firstKnown(captions, bareUnitOf) : null) ??
-      this.#stated
+      this.#statedOrdinate
     );
   }
 

@@ -1,7 +1,7 @@
 import { TankhueError, quoted } from '../errors.ts';
 import { Captions } from './captions.ts';
 import type { Encoding } from './decodeText.ts';
-import { findNumberBlock, strictlyMonotonic, type NumberBlock } from './numberBlock.ts';
+import { findNumberBlock, strictlyMonotonic, withoutUnit, type NumberBlock } from './numberBlock.ts';
 import { numberFromText } from './numberText.ts';
 import type { Layout, ReadOptions } from './readOptions.ts';
 import { cellsOfBlock, RowCollector } from './tableRows.ts';
@@ -58,7 +58,7 @@ function firstRow(head: readonly string[], block: NumberBlock): number {
 function axisAlong(text: string, line: number, block: NumberBlock, file: string): AxisAlong {
   const cells = cellsOfBlock(text, block);
   const values = Float64Array.from(cells.slice(block.labels), (cell, i) => {
-    const value = numberFromText(cell, block.decimal);
+    const value = numberFromText(withoutUnit(cell), block.decimal);
     if (!Number.isNaN(value)) return value;
     throw new TankhueError(
       'not-a-number',

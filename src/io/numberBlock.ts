@@ -84,9 +84,14 @@ const isAxis = (cells: readonly string[]): boolean => {
   return values.length >= 2 && values.every((value) => value >= LEAST_AXIS_VALUE) && strictlyMonotonic(values);
 };
 
+/** `400 nm` along a first line is 400. */
+export const withoutUnit = (cell: string): string => cell.replace(/^([\d.,]+)\s*nm$/i, '$1');
+
 /** A line of labels followed by a rising or falling axis, with lines of as many values below it. */
 function axisRow(tokens: readonly Tokens[]): AxisRow | null {
-  for (const [i, { cells, kinds }] of tokens.entries()) {
+  for (const [i, { cells: written }] of tokens.entries()) {
+    const cells = written.map(withoutUnit);
+    const kinds = cells.map(kindOfCell);
     const labels = kinds.findIndex((kind) => kind === 'number');
     if (labels < 1 || kinds.slice(labels).some((kind) => kind !== 'number') || !isAxis(cells.slice(labels))) continue;
     let length = 0;
@@ -125,11 +130,14 @@ function refuseNoNumbers(lines: readonly string[], file: string): never {
       `${file}:${lone + 1}:1`,
       'export wavelength and absorbance as two columns',
     );
+  const likely = lines.findIndex((line) => /^\W*\d/.test(line) && /\d\D+\d/.test(line));
   throw new TankhueError(
     'no-numbers',
-    `expected a table of numbers; received ${lines.length} lines without one`,
-    file,
-    'export the spectrum as text (CSV) or JCAMP-DX',
+    likely < 0
+      ? `expected a table of numbers; received ${lines.length} lines without one`
+      : `expected a table of numbers; received ${quoted(lines[likely]!.trim())}, which is no row of them`,
+    likely < 0 ? file : `${file}:${likely + 1}:1`,
+    'export the spectrum as text (CSV) or JCAMP-DX, plain numbers without units or thousands marks',
   );
 }
 

@@ -7,6 +7,8 @@ import { TableStore } from './tableStore.ts';
 
 /** Problems shown of one file; the rest are counted. */
 const MOST_SHOWN = 10;
+/** A row goes on from the one before when its axis value lies within so many steps. */
+const MOST_STEPS_ON = 20;
 /** Lines without numbers that are kept in case numbers follow. */
 const MOST_PENDING = 1000;
 
@@ -134,7 +136,7 @@ export class RowCollector {
     const pending = this.#pending;
     if (pending.length === 0) return;
     this.#pending = [];
-    if (!pending.some(({ text }) => this.#resemblesRow(text)) && this.#turnsBack(firstCell)) {
+    if (!pending.some(({ text }) => this.#resemblesRow(text)) && this.#stepsOn(firstCell) <= 0) {
       this.#problems.throwAny();
       throw new TankhueError(
         'second-table',
@@ -146,21 +148,28 @@ export class RowCollector {
     for (const line of pending) this.#refuse(line);
   }
 
-  #turnsBack(firstCell: string): boolean {
+  /** How many steps a line's first cell lies beyond the last axis value; NaN where that cannot be said. */
+  #stepsOn(firstCell: string): number {
     const { rows } = this.#store;
-    if (this.#block.orientation === 'rows' || rows < 2) return false;
+    if (this.#block.orientation === 'rows' || rows < 2) return NaN;
     const next = numberFromText(firstCell, this.#block.decimal);
     const [before, last] = [this.#store.value(rows - 2, 0), this.#store.value(rows - 1, 0)];
-    return (next - last) * (last - before) <= 0;
+    return (next - last) / (last - before);
+  }
+
+  /** A line below the last row that looks like one more of them, and not like a footer that happens to begin with a number. */
+  #goesOn(text: string): boolean {
+    if (!this.#resemblesRow(text)) return false;
+    const steps = this.#stepsOn(cellsOfBlock(text, this.#block)[0]!);
+    return Number.isNaN(steps) || (steps > 0 && steps < MOST_STEPS_ON);
   }
 
   #resemblesRow(text: string): boolean {
+    const { cells: width, labels } = this.#block;
     const cells = cellsOfBlock(text, this.#block);
     const kinds = cells.map(kindOfCell);
-    if (this.#block.labels > 0)
-      return cells.length > this.#block.labels && kinds.slice(this.#block.labels).includes('number');
-    if (kinds[0] !== 'number') return false;
-    return cells.length === this.#block.cells || !kinds.includes('text');
+    if (labels > 0) return kinds.slice(labels).filter((kind) => kind === 'number').length >= (width - labels) / 2;
+    return kinds[0] === 'number' && (cells.length === width || !kinds.includes('text'));
   }
 
   #refuse({ number, text }: PendingLine): void {
@@ -189,7 +198,7 @@ export class RowCollector {
    */
   finish(inPairs: boolean): TableRows {
     if (!inPairs) for (const line of this.#shortRows) this.#refuse(line);
-    for (const line of this.#pending) if (this.#resemblesRow(line.text)) this.#refuse(line);
+    for (const line of this.#pending) if (this.#goesOn(line.text)) this.#refuse(line);
     this.#problems.throwAny();
     return { labels: this.#labels, footerLines: this.#pending.length };
   }

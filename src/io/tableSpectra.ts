@@ -69,7 +69,13 @@ export function spectraFromColumns(source: TableSource): TableSpectra {
   const into = nothingYet();
   into.leftOut.push(...all.filter((i) => i < column).map((i) => captions.name(i)));
   const whereOf = (point: number): string => `${file}:${store.line(point)}:${column + 1}`;
-  const axis = axisFor(into, store.column(column), captions.axisUnit(column), options, whereOf);
+  const axis = axisFor(
+    into,
+    store.column(column),
+    captions.axisUnit(column) ?? captions.statedAxisUnit,
+    options,
+    whereOf,
+  );
   const unitsThroughout = captions.haveUnits(columns);
   for (const one of columns) {
     const values = store.column(one);
@@ -101,7 +107,7 @@ export function spectraFromPairs(source: TableSource): TableSpectra {
     const where = `${file}:${store.line(rows[0]!)}:${column + 2}`;
     const name = captions.nameOfPair(column);
     const caption = captions.ordinateUnit(column + 1, unitsThroughout);
-    const measured = axisFor(into, known, captions.axisUnit(column), options, whereOf);
+    const measured = axisFor(into, known, captions.axisUnit(column) ?? captions.statedAxisUnit, options, whereOf);
     add(into, measured, decideOrdinateUnit(values, caption, options, where), {
       name,
       values: Float64Array.from(rows, (i) => values[i]!),

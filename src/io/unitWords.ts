@@ -43,15 +43,24 @@ export const bareUnitOf = (caption: string): OrdinateUnit | null =>
 export function isUnitOnly(caption: string): boolean {
   const rest = caption
     .replace(
-      /absorbance|absorption|transmittance|transmission|extinction|optical density|per\s?cent|milli|wave\s?(?:length|number)|nano(?:meters?|metres?)/giu,
+      /absorbance|absorption|transmittance|transmission|extinction|optical density|per\s?cent|milli|wave\s?(?:length|number)|(?:nano|micro)(?:meters?|metres?)/giu,
       '',
     )
     .replace(/abs|a\.u\.|au|od|nm|cm|%|[AmT\d\W_]/giu, '');
   return rest === '' && (axisUnitOf(caption) ?? ordinateUnitOf(caption) ?? bareUnitOf(caption)) !== null;
 }
 
-/** A line of prose that states the unit of the values as `key: value`, the value being the unit alone. */
+/** The value of a line of prose like `key: value`. */
+const statedIn = (line: string): string => /[:=;,\t]\s*"?([^:=;,\t"]+)"?[;,\s]*$/.exec(line)?.[1]?.trim() ?? '';
+
+/** A line of prose that states a unit and nothing else: `Y axis: %T`. */
 export function statedOrdinateUnit(line: string): OrdinateUnit | null {
-  const value = /[:=;,\t]\s*"?([^:=;,\t"]+)"?[;,\s]*$/.exec(line)?.[1]?.trim();
-  return value !== undefined && isUnitOnly(value) ? (ordinateUnitOf(value) ?? bareUnitOf(value)) : null;
+  const value = statedIn(line);
+  return isUnitOnly(value) ? (ordinateUnitOf(value) ?? bareUnitOf(value)) : null;
+}
+
+/** A line of prose that states a unit and nothing else: `X axis: 1/cm`. */
+export function statedAxisUnit(line: string): AxisUnit | null {
+  const value = statedIn(line);
+  return isUnitOnly(value) ? axisUnitOf(value) : null;
 }

@@ -39,6 +39,9 @@ describe('one spectrum', () => {
     ['micrometres', 'µm A\n0.400 0.1\n0.401 0.2\n0.402 0.35\n'],
     ['one row of whole milliabsorbances', 'mAU,400,401,402\ncell 3,100,200,350\n'],
     ['one row', 'sample,400,401,402\ncell 3,0.1,0.2,0.35\n'],
+    ['one row with units', 'sample;400 nm;401 nm;402 nm\ncell 3;0,1;0,2;0,35\n'],
+    ['a footer that begins with a number', 'nm A\n400 0.1\n401 0.2\n402 0.35\n\n3 points\n2025-01-01 end\n'],
+    ['the axis in prose', 'X units: micrometers\nY units: absorbance\n0.400 0.1\n0.401 0.2\n0.402 0.35\n'],
     ['per cent in prose about something else', 'Baseline: 100 %T at 700 nm\nnm,A\n400,0.1\n401,0.2\n402,0.35\n'],
     ['the unit in prose', 'Y mode: mA\nX: wavelength\n400 100\n401 200\n402 350\n'],
   ])('%s', (_, text) => {

@@ -25,6 +25,8 @@ describe('what is no spectrum is refused with its place', () => {
     ['a picture', Buffer.from([0x89, 0x50, 0x4e, 0x47, 13, 10]), 'binary', 's.csv'],
     ['any other bytes', Buffer.from([1, 2, 3, 200, 7, 0, 0, 9, 0, 5]), 'binary', 's.csv'],
     ['one number a line', '0.1\n0.2\n0.3\n', 'no-spectrum', 's.csv:1:1'],
+    ['thousands set off by blanks', 'nm;A\n1 100,5;0,1\n1 101,5;0,2\n', 'no-numbers', 's.csv:2:1'],
+    ['a last row with a word', 'nm A\n400 0.1\n401 0.2\n402 0.3x\n', 'not-a-number', 's.csv:4:2'],
     ['one point', 'nm,A\n400,0.1\n', 'points-missing', 's.csv:2:1'],
     ['a word among numbers', '400,0.1\n401,abc\n402,0.3\n403,0.3\n', 'not-a-number', 's.csv:2:2'],
     ['a word for a wavelength', '400,0.1\n401,0.2\nabc,0.3\n403,0.3\n', 'not-a-number', 's.csv:3:1'],
