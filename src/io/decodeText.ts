@@ -20,6 +20,7 @@ const SIGNATURES: ReadonlyArray<readonly [string, readonly number[], string]> = 
 
 /** Bytes enough to know what a file is. */
 const HEAD_BYTES = 65536;
+const LEAST_HEAD_BYTES = 4096;
 
 const startsWith = (bytes: Uint8Array, signature: readonly number[]): boolean =>
   signature.every((byte, i) => bytes[i] === byte);
@@ -107,6 +108,20 @@ function* decoded(first: Uint8Array, others: Iterator<Uint8Array>, encoding: Enc
   yield decoder.decode();
 }
 
+/** Pieces until there are enough bytes to know what the file is: a pipe may begin with very few. */
+function headOf(chunks: Iterator<Uint8Array>): Uint8Array {
+  let head = new Uint8Array();
+  while (head.length < LEAST_HEAD_BYTES) {
+    const next = chunks.next();
+    if (next.done) break;
+    const longer = new Uint8Array(head.length + next.value.length);
+    longer.set(head);
+    longer.set(next.value, head.length);
+    head = longer;
+  }
+  return head;
+}
+
 /**
  * Lines of a file that comes in pieces, decoded as they come.
  * @throws TankhueError `file-empty`, `binary`
@@ -116,8 +131,7 @@ export function linesOfChunks(
   fileName: string,
 ): { readonly encoding: Encoding; readonly lines: Iterable<string> } {
   const iterator = chunks[Symbol.iterator]();
-  const first = iterator.next();
-  const head = first.done ? new Uint8Array() : first.value;
+  const head = headOf(iterator);
   const encoding = encodingOf(head, fileName);
   return { encoding, lines: linesOf(decoded(head, iterator, encoding)) };
 }

@@ -107,7 +107,7 @@ export interface MeasuredValues {
 
 const countNaN = (values: Float64Array): number => {
   let count = 0;
-  for (const value of values) if (Number.isNaN(value)) count++;
+  for (let i = 0; i < values.length; i++) if (Number.isNaN(values[i])) count++;
   return count;
 };
 
@@ -117,11 +117,11 @@ export function measuredSpectrum(
   { name, values, unit, overRange, origin }: MeasuredValues,
 ): { spectrum: Spectrum; understood: UnderstoodSpectrum } {
   const { wavelength } = axis;
-  const absorbance = values.map(TO_ABSORBANCE[unit]);
+  const absorbance = unit === 'A' ? values.slice() : values.map(TO_ABSORBANCE[unit]);
   if (axis.isReversed) absorbance.reverse();
   const unknown = countNaN(values);
   const missing = unknown - overRange;
-  const noLight = countNaN(absorbance) - unknown;
+  const noLight = unit === 'A' ? 0 : countNaN(absorbance) - unknown;
   return {
     spectrum: makeSpectrum(name, wavelength, absorbance, origin),
     understood: {

@@ -1,7 +1,7 @@
 import { TankhueError, TankhueErrors, quoted } from '../errors.ts';
 import { kindOfCell, splitCells } from './cells.ts';
 import type { NumberBlock } from './numberBlock.ts';
-import { DECIMAL_BYTES, readNumberRow, SEPARATOR_BYTES, type NumberForm } from './numberRow.ts';
+import { numberFormOf, readNumberRow, type NumberForm } from './numberRow.ts';
 import { numberFromText } from './numberText.ts';
 import { TableStore } from './tableStore.ts';
 
@@ -66,7 +66,7 @@ export class RowCollector {
     this.#file = file;
     this.#block = block;
     this.#store = new TableStore(block.cells - block.labels);
-    this.#form = { separator: SEPARATOR_BYTES[block.separator], decimal: DECIMAL_BYTES[block.decimal] };
+    this.#form = numberFormOf(block.separator, block.decimal);
   }
 
   /** @param number of the line in the file, from 1 */
@@ -95,7 +95,7 @@ export class RowCollector {
     if (this.#bytes.length < text.length * 3) this.#bytes = new Uint8Array(text.length * 3);
     const { written } = this.#encoder.encodeInto(text, this.#bytes);
     const { block, offset } = this.#store.room();
-    if (readNumberRow(this.#bytes, 0, written, this.#form, block, offset, cells) !== cells) return false;
+    if (readNumberRow(this.#bytes.subarray(0, written), this.#form, block, offset, cells) !== cells) return false;
     if (block.subarray(offset, offset + cells).every(Number.isNaN)) return false;
     this.#store.append(number);
     return true;
