@@ -10,32 +10,35 @@ function oneFile(): Plugin {
   return {
     name: 'one-file',
     enforce: 'post',
-    generateBundle(_, bundle) {
-      const html = Object.values(bundle).find((part) => part.fileName.endsWith('.html'));
-      const scripts = Object.values(bundle).filter((part) => part.type === 'chunk');
-      if (html?.type !== 'asset' || scripts.length !== 1)
-        this.error(`expected one page and one script; received ${Object.keys(bundle).join(', ')}`);
-      // Inside a script element only these two sequences have a meaning for the parser; both occur in texts alone.
-      const script = scripts[0]!.code.replaceAll('</script', '<\\/script').replaceAll('<!--', '<\\!--');
-      const style = `${STYLE_SHEET}${PAGE_STYLE}`;
-      const policy = [
-        `default-src 'none'`,
-        `script-src ${hashOf(script)}`,
-        `style-src ${hashOf(style)}`,
-        `worker-src blob:`,
-        `base-uri 'none'`,
-        `form-action 'none'`,
-      ].join('; ');
-      html.source = String(html.source)
-        .replace(/\s*<script[^>]*src=[^>]*><\/script>/, '')
-        .replace(
-          '<meta charset="utf-8" />',
-          () => `<meta charset="utf-8" />\n    <meta http-equiv="Content-Security-Policy" content="${policy}" />`,
-        )
-        .replace('</head>', () => `<style>${style}</style>\n  </head>`)
-        .replace('</body>', () => `<script type="module">${script}</script>\n  </body>`);
-      html.fileName = 'tankhue.html';
-      for (const part of scripts) delete bundle[part.fileName];
+    generateBundle: {
+      order: 'post',
+      handler(_, bundle) {
+        const html = Object.values(bundle).find((part) => part.fileName.endsWith('.html'));
+        const scripts = Object.values(bundle).filter((part) => part.type === 'chunk');
+        if (html?.type !== 'asset' || scripts.length !== 1)
+          this.error(`expected one page and one script; received ${Object.keys(bundle).join(', ')}`);
+        // Inside a script element only these two sequences have a meaning for the parser; both occur in texts alone.
+        const script = scripts[0]!.code.replaceAll('</script', '<\\/script').replaceAll('<!--', '<\\!--');
+        const style = `${STYLE_SHEET}${PAGE_STYLE}`;
+        const policy = [
+          `default-src 'none'`,
+          `script-src ${hashOf(script)}`,
+          `style-src ${hashOf(style)}`,
+          `worker-src blob:`,
+          `base-uri 'none'`,
+          `form-action 'none'`,
+        ].join('; ');
+        html.source = String(html.source)
+          .replace(/\s*<script[^>]*src=[^>]*><\/script>/, '')
+          .replace(
+            '<meta charset="utf-8" />',
+            () => `<meta charset="utf-8" />\n    <meta http-equiv="Content-Security-Policy" content="${policy}" />`,
+          )
+          .replace('</head>', () => `<style>${style}</style>\n  </head>`)
+          .replace('</body>', () => `<script type="module">${script}</script>\n  </body>`);
+        html.fileName = 'tankhue.html';
+        for (const part of scripts) delete bundle[part.fileName];
+      },
     },
   };
 }
