@@ -5,6 +5,7 @@ export default defineConfig({
     include: ['tests/**/*.test.ts', 'tests/**/*.test.tsx'],
     benchmark: { include: ['tests/bench/**/*.bench.ts'] },
     globalSetup: ['tests/build-once.ts'],
+    setupFiles: ['tests/seeded-laws.ts'],
     reporters: ['default', './tests/closing-line.ts'],
     testTimeout: 60_000,
     maxWorkers: 2,

@@ -96,8 +96,9 @@ function newtonInLogarithms(a: number, b: number, associations: readonly TwoComp
     const dv = -(gb * haa - ga * hab) / det;
     let damping = Math.min(1, 4 / Math.max(Math.abs(du), Math.abs(dv), 1e-300));
     let next = potential(u + damping * du, v + damping * dv);
-    // Close to the minimum the potential is flat to the last digit, and only the full step converges.
-    while (next > value + 1e-14 * Math.abs(value) && damping > 1e-6) {
+    // Close to the minimum the potential is flat to the last digit of its terms, and only the full step converges.
+    const flat = 1e-14 * (a + b + Math.abs(a * u) + Math.abs(b * v));
+    while (next > value + flat && damping > 1e-6) {
       damping /= 2;
       next = potential(u + damping * du, v + damping * dv);
     }

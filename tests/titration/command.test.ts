@@ -145,12 +145,12 @@ pos,pos.csv,y,0.5,0.6,1.0,0.03,mixed,check,dark
   });
 
   // A command has 0.5 s, of which the start of the process takes 0.3; the best of a few, because the machine may be busy.
-  test('a day of titrations is evaluated in less than 0.2 s', () => {
+  test('a day of titrations is evaluated in less than 0.2 s of processor time', () => {
     const origin = { file: 'day.csv', column: '', sha256: '' };
     const times = Array.from({ length: 4 }, () => {
-      const before = performance.now();
+      const before = process.cpuUsage();
       titrate(readTitrations([{ bytes: new TextEncoder().encode(day), origin }], null).runs);
-      return performance.now() - before;
+      return process.cpuUsage(before).user / 1000;
     });
     expect(Math.min(...times)).toBeLessThan(200);
   });
