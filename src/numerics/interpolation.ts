@@ -1,5 +1,5 @@
 // What        Values between points: on straight pieces, and on a smooth curve that rises and falls only where the points do.
-// Equation    cubic Hermite pieces; slopes are the three-point means, cut so that (α, β), slopes over the chord's, stay in the circle of radius 3.
+// Equation    cubic Hermite pieces; slopes are the three-point means, cut so that √(slope² + next²) ≤ 3 chords.
 // Why so      An ordinary spline overshoots beside a step and invents negative absorbances there; this cannot.
 // Valid for   strictly rising x. Nothing is extrapolated: NaN outside.
 // Units       those of y.
@@ -33,11 +33,11 @@ export function monotoneCurve(x: ArrayLike<number>, y: ArrayLike<number>): Curve
     else {
       if (i > 0 && chord[i - 1]! * chord[i]! <= 0) slope[i] = 0;
       if (i < count - 2 && chord[i]! * chord[i + 1]! <= 0) slope[i + 1] = 0;
-      const [alpha, beta] = [slope[i]! / chord[i]!, slope[i + 1]! / chord[i]!];
-      const radius = Math.hypot(alpha, beta);
-      if (radius > 3) {
-        slope[i] = ((3 * alpha) / radius) * chord[i]!;
-        slope[i + 1] = ((3 * beta) / radius) * chord[i]!;
+      const length = Math.hypot(slope[i]!, slope[i + 1]!);
+      const most = 3 * Math.abs(chord[i]!);
+      if (length > most) {
+        slope[i] = (slope[i]! / length) * most;
+        slope[i + 1] = (slope[i + 1]! / length) * most;
       }
     }
   }

@@ -20,6 +20,8 @@ export interface SeededRandom extends Random {
 
 /** Draws thrown away first: generators of neighbouring seeds start alike. */
 const WARM_UP = 32;
+/** Without it the fork 0 of seed 0 would be its parent. */
+const FORKED = 0x9e3779b9;
 
 /**
  * xoroshiro128+ of pure-rand (period 2¹²⁸ − 1); normal deviates by the polar method (Marsaglia, Bray, SIAM Rev. 1964, 6, 260).
@@ -52,7 +54,7 @@ export function seededRandom(seed: number): SeededRandom {
     },
     fork: (label) => {
       expectWhole(label, 'label');
-      return seededRandom(scrambled(Math.imul(scrambled(seed), 31) ^ scrambled(label ^ 0x9e3779b9)));
+      return seededRandom(scrambled(scrambled(seed ^ FORKED) ^ label));
     },
   };
 }

@@ -2,10 +2,10 @@
 // Equation    a simplex of n + 1 points: the worst is reflected (1), expanded (2), contracted (½), or all shrink towards the best (½).
 // Why so      For criteria with corners or steps, where derivatives do not exist; where they do, levenbergMarquardt.ts is far better.
 // Valid for   up to some five unknowns. It can stall away from a minimum (K. I. M. McKinnon, SIAM J. Optim. 1998, 9, 148), so it starts again
-//             from its answer with a fresh simplex until that gains nothing.
+//             from its answer with a fresh simplex, turned, until two of them gain nothing.
 // Units       those of the unknowns.
 // Source      J. A. Nelder, R. Mead, Comput. J. 1965, 7, 308.
-import { expectFinite, expectLength, expectPoints } from './expectations.ts';
+import { expectFinite, expectLength, expectPoints, expectPositive } from './expectations.ts';
 
 export interface SimplexOptions {
   /** first edge along each unknown; a tenth of the start, or 0.1 where that is 0 */
@@ -25,7 +25,7 @@ export interface SimplexMinimum {
 
 type Vertex = { readonly point: number[]; readonly value: number };
 
-/** @throws TankhueError `points-missing`, `length-differs`, `not-finite` */
+/** @throws TankhueError `points-missing`, `length-differs`, `not-finite`, `not-positive` (an edge of 0) */
 export function minimiseBySimplex(
   f: (point: readonly number[]) => number,
   start: readonly number[],
@@ -35,21 +35,26 @@ export function minimiseBySimplex(
   expectFinite(start, 'start');
   const edge = edges ?? start.map((value) => Math.abs(value) / 10 || 0.1);
   expectLength(edge, start.length, 'edges');
+  expectPositive(edge.map(Math.abs), 'edges');
   let evaluations = 0;
   const at = (point: number[]): Vertex => {
     evaluations++;
     const value = f(point);
     return { point, value: Number.isNaN(value) ? Infinity : value };
   };
+  // The other way round at every fresh start, and both ways before it is believed: the same simplex would stall at the same place.
+  let turned = edge;
+  let idle = 0;
   let best = at([...start]);
   expectFinite([best.value], 'value at the start');
-  for (;;) {
-    const found = descend(best, edge, at, tolerance, () => evaluations >= most);
-    const isUsedUp = evaluations >= most;
-    const gains = best.value - found.value > tolerance * Math.abs(found.value);
+  const isUsedUp = (): boolean => evaluations >= most;
+  while (!isUsedUp() && idle < 2) {
+    const found = descend(best, turned, at, tolerance, isUsedUp);
+    idle = best.value - found.value > tolerance * Math.abs(found.value) ? 0 : idle + 1;
     best = found;
-    if (isUsedUp || !gains) return { point: [...best.point], value: best.value, evaluations, converged: !isUsedUp };
+    turned = turned.map((each) => -each);
   }
+  return { point: [...best.point], value: best.value, evaluations, converged: !isUsedUp() };
 }
 
 function descend(

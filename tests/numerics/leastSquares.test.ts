@@ -119,6 +119,8 @@ test('condition of columns: known angle, dependent, empty', () => {
   const ratio = Math.sqrt((1 + Math.cos(angle)) / (1 - Math.cos(angle)));
   const pair = [Float64Array.of(1, 0), Float64Array.of(Math.cos(angle), Math.sin(angle))];
   expect(conditionOfColumns(pair).ratio / ratio).toBeCloseTo(1, 9);
+  // Lengths are taken out.
+  expect(conditionOfColumns([pair[0]!.map((x) => 1e6 * x), pair[1]!]).ratio / ratio).toBeCloseTo(1, 9);
   // 1e-9 apart: the Gram matrix would have lost it.
   const close = [Float64Array.of(1, 0), Float64Array.of(1, 1e-9)];
   expect(conditionOfColumns(close).ratio / 2e9).toBeCloseTo(1, 5);

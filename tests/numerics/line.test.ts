@@ -11,8 +11,9 @@ import {
   lineAt,
   xIntercept,
 } from '../../src/numerics/line.ts';
-import { propagate } from '../../src/numerics/propagate.ts';
+import { propagate, propagateTogether } from '../../src/numerics/propagate.ts';
 import { seededRandom, type Random } from '../../src/numerics/random.ts';
+import { minimiseOnInterval } from '../../src/numerics/root.ts';
 import { theilSenLine } from '../../src/numerics/robustLine.ts';
 import { expectPrinted, expectRelative } from '../references/published.ts';
 import { expectRefusal } from '../support/refusal.ts';
@@ -261,6 +262,59 @@ describe('laws', () => {
       Math.sqrt(there.line.slopeVariance),
       9,
     );
+  });
+
+  test('correlated errors: least distance, and sensitivities as refitting shows them', () => {
+    const random = seededRandom(31);
+    const x = places.map((value) => value + 0.3 * random.normal());
+    const y = scattered(random, 2, 1.5, 0.5);
+    const correlation = places.map((_, i) => 0.8 * Math.sin(i));
+    const points = {
+      x,
+      y,
+      uncertaintyX: places.map((_, i) => 0.1 + i / 20),
+      uncertaintyY: places.map(() => 0.5),
+      correlation,
+    };
+    const { line, chiSquare, bySensitivity } = fitLineWithErrorsInBoth(points);
+    const distance = (slope: number): number => {
+      const weights = places.map((_, i) => {
+        const [u, v] = [points.uncertaintyX[i]!, points.uncertaintyY[i]!];
+        return 1 / (v * v + slope * slope * u * u - 2 * slope * correlation[i]! * u * v);
+      });
+      const intercept =
+        weights.reduce((sum, w, i) => sum + w * (y[i]! - slope * x[i]!), 0) / weights.reduce((sum, w) => sum + w, 0);
+      return weights.reduce((sum, w, i) => sum + w * (y[i]! - intercept - slope * x[i]!) ** 2, 0);
+    };
+    const least = minimiseOnInterval(distance, 0.5, 3);
+    expect(Math.abs(line.slope - least.x)).toBeLessThan(1e-6);
+    expect(chiSquare).toBeCloseTo(least.value, 10);
+    const covariance = x.flatMap((_, i) =>
+      [0, 1].map((k) =>
+        x.flatMap((__, j) =>
+          [0, 1].map((l) => {
+            if (i !== j) return 0;
+            const [u, v] = [points.uncertaintyX[i]!, points.uncertaintyY[i]!];
+            return k === l ? (k === 0 ? u * u : v * v) : correlation[i]! * u * v;
+          }),
+        ),
+      ),
+    );
+    const refitted = propagateTogether(
+      (data) => {
+        const again = fitLineWithErrorsInBoth({
+          ...points,
+          x: x.map((_, i) => data[2 * i]!),
+          y: y.map((_, i) => data[2 * i + 1]!),
+        });
+        return [again.line.intercept, again.line.slope];
+      },
+      x.flatMap((value, i) => [value, y[i]!]),
+      covariance,
+    );
+    expectRelative(bySensitivity.interceptVariance, refitted.covariance[0]![0]!, 1e-5);
+    expectRelative(bySensitivity.slopeVariance, refitted.covariance[1]![1]!, 1e-5);
+    expectRelative(bySensitivity.covariance, refitted.covariance[0]![1]!, 1e-5);
   });
 
   test('one ratio for all points: closed form and iteration agree', () => {

@@ -18,6 +18,7 @@ test('a fork does not depend on what was drawn before, nor on the order of forks
   expect(draw(used.fork(4), 20)).toEqual(draw(fresh.fork(4), 20));
   expect(draw(fresh.fork(4), 20)).not.toEqual(draw(fresh.fork(5), 20));
   expect(draw(fresh.fork(4), 20)).not.toEqual(draw(seededRandom(4).fork(3), 20));
+  expect(draw(seededRandom(0).fork(0), 20)).not.toEqual(draw(seededRandom(0), 20));
 });
 
 test('forks of neighbouring labels are independent of one another and of their parent', () => {

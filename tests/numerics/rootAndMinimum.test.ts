@@ -87,11 +87,16 @@ describe('simplex', () => {
     expect(value).toBeLessThan(1e-10);
   });
 
-  // K. I. M. McKinnon, SIAM J. Optim. 1998, 9, 148: from this simplex the plain method stalls at (0, 0), where the slope is not zero.
-  test("McKinnon's function, where the plain method stalls at the origin", () => {
-    const f = ([x, y]: readonly number[]) => (x! <= 0 ? 360 : 6) * x! * x! + y! + y! * y!;
-    const { point } = minimiseBySimplex(f, [0, 0], { edges: [1, 1] });
-    expect(point[1]).toBeCloseTo(-0.5, 3);
+  // K. I. M. McKinnon, SIAM J. Optim. 1998, 9, 148, eq. 2.1 with τ = 2, θ = 6, φ = 60: from the simplex (0, 0), (1, 1), ((1 + √33)/8, (1 − √33)/8)
+  // the plain method contracts for ever towards (0, 0), where the slope is not zero. The minimum is −1/4 at (0, −1/2).
+  test("McKinnon's function, where the plain method stalls", () => {
+    const [along, down] = [(1 + Math.sqrt(33)) / 8, (1 - Math.sqrt(33)) / 8];
+    const f = ([u, v]: readonly number[]): number => {
+      const [x, y] = [u! + along * v!, u! + down * v!];
+      return (x <= 0 ? 360 : 6) * x * x + y + y * y;
+    };
+    const { value } = minimiseBySimplex(f, [0, 0], { edges: [1, 1] });
+    expect(value).toBeCloseTo(-0.25, 6);
   });
 
   test('a corner, which has no derivative', () => {
@@ -110,6 +115,8 @@ describe('simplex', () => {
     ['points-missing', []],
     ['not-finite', [NaN]],
   ])('%s: start %j', (code, start) => expectRefusal(() => minimiseBySimplex(() => 0, start), code));
+  test('an edge of 0 goes nowhere', () =>
+    expectRefusal(() => minimiseBySimplex(() => 0, [1, 1], { edges: [1, 0] }), 'not-positive', 'edges[1]'));
   test('no value at the start', () =>
     expectRefusal(() => minimiseBySimplex(() => NaN, [1]), 'not-finite', 'value at the start[0]'));
 });

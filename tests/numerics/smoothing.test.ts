@@ -107,6 +107,12 @@ describe('laws', () => {
     );
   });
 
+  // Slope 4 chords at one end and 0 at the other: uncut it would pass 8 and come back.
+  test('a steep piece before a level one', () => {
+    const curve = monotoneCurve([0, 1, 2, 3], [0, 7, 8, 8]);
+    for (let x = 1; x <= 2; x += 0.01) expect(curve(x)).toBeLessThanOrEqual(8 + 1e-12);
+  });
+
   test('a smooth monotone function is followed to a fraction of its curvature', () => {
     const x = Array.from({ length: 21 }, (_, i) => i / 10);
     const curve = monotoneCurve(x, x.map(Math.exp));
