@@ -1,10 +1,9 @@
 import { balanceReport, assayReport, VERSION, type AssayDocument, type BalanceDocument } from '../index.ts';
 import { DepthPicture } from '../report/pictures/depthPicture.tsx';
 import { OxidationLadder } from '../report/pictures/oxidationLadder.tsx';
-import { percentText } from '../report/quantityText.ts';
 import { AssaySection } from '../report/sections/assaySection.tsx';
 import { BalanceSection, VERDICT_TINT, VERDICT_WORD } from '../report/sections/balanceSection.tsx';
-import { idFrom } from '../report/words.ts';
+import { idFrom, percentWithUnit } from '../report/words.ts';
 import { AMPERE_HOURS_PER_MOLE } from '../units.ts';
 import type { Bench } from './bench.ts';
 import { saveFile } from './saveFile.ts';
@@ -23,8 +22,8 @@ export function AnswerStrip({ bench }: { bench: Bench }) {
             {system.system && <strong class="break">{system.system}: </strong>}
             <span class={`badge ${VERDICT_TINT[system.verdict]}`}>{VERDICT_WORD[system.verdict]}</span>{' '}
             <span class="numbers">
-              negative {percentText(system.stateOfCharge.negative.value, system.stateOfCharge.negative.uncertainty)} %,
-              positive {percentText(system.stateOfCharge.positive.value, system.stateOfCharge.positive.uncertainty)} %
+              negative {percentWithUnit(system.stateOfCharge.negative)}, positive{' '}
+              {percentWithUnit(system.stateOfCharge.positive)}
               {system.usableCharge.value !== null &&
                 `, usable ${Math.round(system.usableCharge.value * AMPERE_HOURS_PER_MOLE).toLocaleString('en')} Ah`}
             </span>{' '}
@@ -36,7 +35,7 @@ export function AnswerStrip({ bench }: { bench: Bench }) {
           {results.assays.assays
             .map(
               (assay) =>
-                `${assay.sample}: ${assay.side === 'composite' ? 'composite' : `${percentText(assay.stateOfCharge.value, assay.stateOfCharge.uncertainty)} % charged`}`,
+                `${assay.sample}: ${assay.side === 'composite' ? 'composite' : `charged ${percentWithUnit(assay.stateOfCharge)}`}`,
             )
             .join('; ')}
         </p>

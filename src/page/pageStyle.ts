@@ -1,9 +1,10 @@
 /** What the page needs beyond the style of reports. */
 export const PAGE_STYLE = `
+html{scroll-padding-bottom:7rem;scroll-padding-top:1rem}
 .sheet{padding-bottom:7rem}
 .head{max-width:60rem;margin:0 auto;padding:1.5rem 1.25rem 0}
 button,.button{font:inherit;color:var(--accent-ink);background:var(--accent);border:1px solid var(--accent);border-radius:.35rem;padding:.35rem .8rem;cursor:pointer;display:inline-block;min-height:2.2rem}
-button.quiet{background:transparent;color:var(--accent)}
+button.quiet{background:var(--raised);color:var(--accent)}
 button[aria-disabled=true]{background:transparent;color:var(--soft);border-color:var(--line);cursor:default}
 button:focus-visible,.button:focus-within,input:focus-visible,select:focus-visible,textarea:focus-visible{outline:3px solid var(--accent);outline-offset:2px}
 .file-input{position:absolute;opacity:0;width:1px;height:1px}
@@ -28,6 +29,7 @@ input[aria-invalid=true]{border:2px solid var(--withheld-ink)}
 .row-answer{margin:.5rem 0 .1rem}
 .beside{padding:.4rem .65rem;border-radius:.25rem;border-left:.3rem solid currentColor;margin:.3rem 0}
 .cell .beside{font-size:.88rem}
+.cell:has(.beside){flex:1 1 20rem}
 .first{background:var(--raised);border:1px solid var(--grid);border-radius:.4rem;padding:.4rem 1rem .7rem}
 .first ol{padding-left:1.3rem}
 .demo-buttons{display:flex;flex-wrap:wrap;gap:.5rem}

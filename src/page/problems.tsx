@@ -7,7 +7,7 @@ export function Problems({ id, problems }: { id?: string; problems: readonly Pro
     <ul class="findings" id={id}>
       {problems.map((problem, i) => (
         <li class="withhold" key={i}>
-          <strong>Cannot be used:</strong> {problem.message} <span class="soft break">({problem.where})</span>{' '}
+          <strong>Cannot be used:</strong> {problem.message} <span class="break">({problem.where})</span>{' '}
           <code>{problem.code}</code>
           <span class="do">Do: {problem.hint}.</span>
         </li>

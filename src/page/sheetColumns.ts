@@ -46,7 +46,22 @@ const HINTS: Readonly<Record<string, string>> = {
   open_circuit_V: 'rest voltage of one cell',
 };
 
-const words = (name: string): string => name.replaceAll('_', ' ').replace(/ (mm|L|C|V|mol L|mol|Ah)$/, ', $1');
+const UNITS: readonly (readonly [RegExp, string])[] = [
+  [/ mol L$/, ', mol/L'],
+  [/ u mm$/, ' uncertainty, mm'],
+  [/ u L$/, ' uncertainty, L'],
+  [/ u$/, ' uncertainty'],
+  [/ C$/, ', °C'],
+  [/ (L|V|mol|Ah)$/, ', $1'],
+];
+
+/** `volume_u_L` → `Volume uncertainty, L` */
+function words(name: string): string {
+  const plain = name.replaceAll('_', ' ');
+  const [pattern, unit] = UNITS.find(([candidate]) => candidate.test(plain)) ?? [/$/, ''];
+  const text = plain.replace(pattern, unit);
+  return text.charAt(0).toUpperCase() + text.slice(1);
+}
 
 export const FURTHER_COLUMNS: readonly SheetColumn[] = TANKS_COLUMNS.filter(
   (name) => !MAIN_COLUMNS.some((column) => column.name === name),

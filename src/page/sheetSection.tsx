@@ -1,7 +1,7 @@
 import { speciesOfPair, type AssayResult, type Finding } from '../index.ts';
-import { concentrationText, percentText } from '../report/quantityText.ts';
+import { concentrationText } from '../report/quantityText.ts';
 import { StateBadge } from '../report/sections/assaySection.tsx';
-import { romanNumeral } from '../report/words.ts';
+import { percentWithUnit, romanNumeral } from '../report/words.ts';
 import type { Bench } from './bench.ts';
 import type { Problem, Results } from './protocol.ts';
 import { saveFile } from './saveFile.ts';
@@ -144,8 +144,7 @@ function RowAnswer({ assay }: { assay: AssayResult }) {
         </>
       ) : (
         <span class="numbers">
-          {assay.side !== 'composite' &&
-            `${percentText(assay.stateOfCharge.value, assay.stateOfCharge.uncertainty)} % charged; `}
+          {assay.side !== 'composite' && `charged ${percentWithUnit(assay.stateOfCharge)}; `}
           {amounts.join(', ')} mol/L
         </span>
       )}

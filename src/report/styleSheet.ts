@@ -75,6 +75,7 @@ body{font-size:10.5pt}
 .sheet{max-width:none;padding:0}
 .picture{border-color:#bbb}
 .picture .drawing{overflow:visible}
+.picture details:not([open]){display:none}
 .picture .drawing svg{min-width:0}
 h2,h3{break-after:avoid}
 .findings li,.answers,tr{break-inside:avoid}

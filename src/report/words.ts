@@ -1,7 +1,7 @@
-import type { AssayState } from '../assay/result.ts';
+import type { AssayState, Quantity } from '../assay/result.ts';
 import { oxidationNumber, SPECIES, type Side, type Species } from '../electrolyte/species.ts';
 import { millimetresFromCentimetres } from '../units.ts';
-import { quantityText } from './quantityText.ts';
+import { percentText } from './quantityText.ts';
 
 /** `V(IV)` for a species, `V(IV)·V(V) complex` for `V4·V5`, `V(V) with itself` for `2V5`; other names as they are. */
 export function absorberName(name: string): string {
@@ -30,11 +30,9 @@ export const STATE_WORD: Readonly<Record<AssayState, string>> = {
   withheld: 'withheld',
 };
 
-/** `52.65 ± 0.87 %`; `withheld` for null. */
-export function withUnit(value: number | null, uncertainty: number | null, unit: string): string {
-  const text = quantityText(value, uncertainty);
-  return value === null || unit === '' ? text : `${text} ${unit}`;
-}
+/** A fraction as `52.65 ± 0.87 %`; `withheld` for null. */
+export const percentWithUnit = ({ value, uncertainty }: Quantity): string =>
+  value === null ? 'withheld' : `${percentText(value, uncertainty)} %`;
 
 /** cm → `0.1 mm`, without the tail of a binary fraction */
 export const pathText = (pathLength: number): string =>

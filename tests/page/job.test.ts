@@ -221,7 +221,7 @@ describeInBrowser('the bench page', (open) => {
     await page.getByRole('group', { name: 'one' }).getByLabel('Side').selectOption('negative');
     const shown = page.locator('.row-answer');
     await expect.poll(() => shown.allTextContents().then((texts) => new Set(texts).size)).toBe(1);
-    expect((await shown.allTextContents())[0]).toMatch(/45\.\d+ ± .* % charged; V\(II\) 0\.70/);
+    expect((await shown.allTextContents())[0]).toMatch(/charged 45\.\d+ ± .* %; V\(II\) 0\.70/);
     await close();
   });
 

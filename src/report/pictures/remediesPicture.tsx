@@ -7,7 +7,7 @@ import { Picture } from './picture.tsx';
 const WIDTH = 760;
 const LEFT = 190;
 const RIGHT = 720;
-const TOP = 40;
+const TOP = 54;
 const ROW = 46;
 
 const ampereHours = (electrons: number): string =>
@@ -61,8 +61,8 @@ export function RemediesPicture({ id, balance }: { id: string; balance: SystemBa
       <text class="soft middle halo" x={at(x(now))} y={TOP - 14}>
         now
       </text>
-      <path class="axis" d={`M${RIGHT} ${TOP - 8}V${bottom}`} />
-      <text class="soft end" x={RIGHT} y={TOP - 14}>
+      <path class="axis" d={`M${RIGHT} ${TOP - 28}V${bottom}`} />
+      <text class="soft end" x={RIGHT} y={TOP - 34}>
         the most this vanadium can hold
       </text>
       {remedies.map((remedy, i) => {

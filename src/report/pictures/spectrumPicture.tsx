@@ -144,10 +144,16 @@ export function scaledResiduals({ measured, fitted, residualUncertainty }: Curve
   return measured.map((value, i) => (value === null ? null : (value - fitted[i]!) / residualUncertainty[i]!));
 }
 
+/** Parts of the wavelengths that may lie beyond two uncertainties before the fit is called poor: one in twenty does so by chance. */
+const FAR_DOUBTFUL = 0.1;
+const FAR_POOR = 0.33;
+
 function fitSentence({ findings, fit }: AssayResult, residuals: readonly (number | null)[]): string {
   const far = residuals.filter((value) => value !== null && Math.abs(value) > 2).length;
-  const poor = findings.find((finding) => finding.code === 'poor-match');
-  const verdict = poor ? (poor.severity === 'withhold' ? 'No' : 'Not fully') : 'Yes';
+  const severity = findings.find(({ code }) => code === 'poor-match')?.severity;
+  const share = far / residuals.length;
+  const verdict =
+    severity === 'withhold' || share > FAR_POOR ? 'No' : severity || share > FAR_DOUBTFUL ? 'Not fully' : 'Yes';
   return `${verdict}: ${far} of ${residuals.length} wavelengths miss by more than twice their uncertainty; ${fit!.residualRms.toPrecision(2)} of absorbance is left on average (root mean square).`;
 }
 

@@ -17,7 +17,7 @@ export function AssaySection({ id, assay }: { id: string; assay: AssayResult }) 
       <AssayNumbers assay={assay} />
       <Findings findings={assay.findings} />
       <SpectrumPicture id={`${id}-spectrum`} assay={assay} />
-      <BudgetPicture id={`${id}-budget`} assay={assay} />
+      {assay.state !== 'withheld' && <BudgetPicture id={`${id}-budget`} assay={assay} />}
     </section>
   );
 }

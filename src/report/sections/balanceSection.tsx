@@ -6,7 +6,7 @@ import { AMPERE_HOURS_PER_MOLE } from '../../units.ts';
 import { DepthPicture } from '../pictures/depthPicture.tsx';
 import { OxidationLadder, type Ladder } from '../pictures/oxidationLadder.tsx';
 import { RemediesPicture } from '../pictures/remediesPicture.tsx';
-import { percentText, quantityText } from '../quantityText.ts';
+import { decimalsFor, percentText, quantityText } from '../quantityText.ts';
 import { standingText } from '../standingText.ts';
 import { Answer, Answers } from './answers.tsx';
 import { Findings } from './findings.tsx';
@@ -89,6 +89,9 @@ function BalanceAnswers({ balance }: { balance: SystemBalance }) {
   );
 }
 
+const expandedText = ({ uncertainty }: UnitQuantity): string =>
+  uncertainty === null ? '–' : (2 * uncertainty).toFixed(decimalsFor(uncertainty));
+
 const percent = (share: number): string => `${Number((100 * share).toPrecision(4))} %`;
 
 const QUANTITIES = [
@@ -123,7 +126,7 @@ function BalanceTable({ balance }: { balance: SystemBalance }) {
               <tr key={key}>
                 <th scope="row">{name}</th>
                 <td class="number">{quantityText(balance[key].value, balance[key].uncertainty)}</td>
-                <td class="number">{(2 * balance[key].uncertainty!).toPrecision(2)}</td>
+                <td class="number">{expandedText(balance[key])}</td>
                 <td>{balance.judged && standingText(balance.judged[key] as Judged)}</td>
                 <td>{meaning}</td>
               </tr>
@@ -133,7 +136,7 @@ function BalanceTable({ balance }: { balance: SystemBalance }) {
               <td class="number">
                 {quantityText(balance.averageOxidationState.value, balance.averageOxidationState.uncertainty)} (1)
               </td>
-              <td class="number">{(2 * balance.averageOxidationState.uncertainty!).toPrecision(2)}</td>
+              <td class="number">{expandedText(balance.averageOxidationState)}</td>
               <td>3.5 when nothing is lost</td>
               <td>of both tanks together</td>
             </tr>
