@@ -72,5 +72,5 @@ async function run(command: Command, sheet: string, options: BalanceOptions): Pr
 
 function formatted(document: BalanceDocument, format: BalanceOptions['format']): string {
   if (format === 'json') return `${JSON.stringify(document, null, 1)}\n`;
-  return format === 'csv' ? balanceCsv(document) : balanceText(document);
+  return format === 'csv' ? balanceCsv(document) : balanceText(document, process.stdout.columns);
 }

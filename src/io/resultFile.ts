@@ -80,6 +80,19 @@ const standing = v.picklist(['clear', 'possible', 'within']);
 const judged = v.object({ watch: standing, act: standing });
 const limit = v.object({ watch: finiteNumber, act: finiteNumber });
 
+const driftOf = v.object({
+  rate: v.object({ value: finiteNumber, uncertainty: notNegative }),
+  actAt: v.nullable(finiteNumber),
+  notBefore: v.nullable(finiteNumber),
+});
+const drift = v.object({
+  visits: finiteNumber,
+  from: finiteNumber,
+  to: finiteNumber,
+  netOxidation: driftOf,
+  vanadiumShift: driftOf,
+});
+
 const balanceDocument = v.looseObject({
   schema: v.literal('tankhue/balance/1'),
   calibration: v.object({ name: v.string(), sha256: v.string() }),
@@ -105,6 +118,7 @@ const balanceDocument = v.looseObject({
       positive: v.nullable(assay),
       composite: v.nullable(assay),
       findings: v.array(finding),
+      drift: v.optional(drift),
       assumed: v.array(v.string()),
       disclaimer: v.string(),
     }),

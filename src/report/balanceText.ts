@@ -1,16 +1,21 @@
 import type { BalanceDocument, SystemBalance, UnitQuantity } from '../tanks/balance.ts';
 import { AMPERE_HOURS_PER_MOLE } from '../units.ts';
 import { findingText } from './assayText.ts';
+import { driftText } from './driftText.ts';
+import { ladderText } from './ladderText.ts';
 import { percentText, quantityText, wrapped } from './quantityText.ts';
 import { standingText } from './standingText.ts';
 
 const WIDTH = 80;
 const LABEL = 24;
 
-/** All plants for a terminal: the verdict in words, the numbers asked for, what to do, what is doubtful, what was assumed. */
-export function balanceText(document: BalanceDocument): string {
+/**
+ * All plants for a terminal: the verdict in words, the numbers asked for, what to do, what is doubtful, what was assumed.
+ * @param columns of the terminal; only the ladder follows it, words are wrapped at 80
+ */
+export function balanceText(document: BalanceDocument, columns = WIDTH): string {
   return [
-    ...document.systems.map(oneSystem),
+    ...document.systems.map((system) => oneSystem(system, columns)),
     '± is the standard uncertainty (k = 1). Limits: common practice, no source.',
     `calibration ${document.calibration.name} ${document.calibration.sha256.slice(0, 12)}`,
     ...(document.systems[0] ? [wrapped(document.systems[0].disclaimer, WIDTH, '')] : []),
@@ -22,7 +27,7 @@ const row = (label: string, text: string): string => `  ${label.padEnd(LABEL)}${
 const amount = (quantity: UnitQuantity): string =>
   `${quantityText(quantity.value, quantity.uncertainty)} ${quantity.unit}`;
 
-function oneSystem(system: SystemBalance): string {
+function oneSystem(system: SystemBalance, columns: number): string {
   const { negative, positive } = system.stateOfCharge;
   return [
     `${system.system || 'plant'} — ${system.verdict.toUpperCase()}`,
@@ -30,6 +35,7 @@ function oneSystem(system: SystemBalance): string {
     ...(system.netOxidation.value === null ? [] : numberLines(system)),
     row('negative', `${percentText(negative.value, negative.uncertainty)} % charged`),
     row('positive', `${percentText(positive.value, positive.uncertainty)} % charged`),
+    ...ladderLines(system, columns),
     ...driftLines(system),
     ...(system.openCircuit
       ? [
@@ -55,21 +61,23 @@ function oneSystem(system: SystemBalance): string {
   ].join('\n');
 }
 
-const day = (time: number): string => new Date(time).toISOString().slice(0, 10);
+/** Both sides on one axis: `P` under `n` would be equally charged. */
+function ladderLines({ negative, positive }: SystemBalance, columns: number): string[] {
+  if (
+    (negative?.averageOxidationState.value ?? null) === null ||
+    (positive?.averageOxidationState.value ?? null) === null
+  )
+    return [];
+  const ladder = ladderText(
+    { negative: negative!.averageOxidationState, positive: positive!.averageOxidationState },
+    Math.min(columns, WIDTH) - 2,
+  );
+  return ladder.split('\n').map((line) => `  ${line}`);
+}
 
-function driftLines(system: SystemBalance): string[] {
-  if (!system.drift) return [];
-  const line = (
-    label: string,
-    { rate, actAt, notBefore }: NonNullable<SystemBalance['drift']>['netOxidation'],
-  ): string => {
-    const expected = actAt === null ? 'no certain drift' : `act limit about ${day(actAt)}`;
-    return row(
-      label,
-      `${quantityText(rate.value, rate.uncertainty)} mol a month; ${expected}, not before ${notBefore === null ? 'ever' : day(notBefore)}`,
-    );
-  };
-  return [line('drift of X', system.drift.netOxidation), line('drift of M', system.drift.vanadiumShift)];
+function driftLines({ drift }: SystemBalance): string[] {
+  if (!drift) return [];
+  return [row('drift of X', driftText(drift.netOxidation)), row('drift of M', driftText(drift.vanadiumShift))];
 }
 
 const gainText = (gain: number, recovered: number): string =>

@@ -12,6 +12,7 @@ import {
   xyzOf,
   type Triple,
 } from '../../src/electrolyte/colour.ts';
+import { parseCalibration, seededRandom, simulateSpectrum } from '../../src/index.ts';
 import { colourDifference } from '../../src/electrolyte/colourDifference.ts';
 import { D65, OBSERVER_AXIS, xbar, ybar, zbar } from '../../src/electrolyte/standardObserver.ts';
 
@@ -135,6 +136,49 @@ function xyzFromSrgb(srgb: Triple): Triple {
     100 * (0.0193 * r + 0.1192 * g + 0.9505 * b),
   ];
 }
+
+describe('colours of the bench', () => {
+  const reference = parseCalibration(readFileSync('calibration/reference.json', 'utf8'));
+  const through = (concentration: Readonly<Record<string, number>>, pathLength: number) => {
+    const { wavelength, absorbance } = simulateSpectrum(
+      reference,
+      { name: 'vial', concentration, pathLength },
+      seededRandom(1),
+    );
+    return colourThrough(wavelength, absorbance);
+  };
+
+  // Common practice, no source: V(II) is violet, V(III) green, V(IV) blue, V(V) yellow. Hue angles of CIE Lab: yellow about 90,
+  // green 130-190 (towards blue in this ion), blue 215-290, violet 295-320. At 1 cm, as in a vial; tank electrolyte is nearly black there.
+  test.each([
+    ['V(II)', { V2: 0.1 }, [290, 320]],
+    ['V(II)', { V2: 0.4 }, [290, 320]],
+    ['V(III)', { V3: 0.1 }, [130, 190]],
+    ['V(III)', { V3: 0.4 }, [130, 190]],
+    ['V(IV)', { V4: 0.1 }, [210, 290]],
+    ['V(IV)', { V4: 0.8 }, [210, 290]],
+    ['V(V)', { V5: 0.1 }, [75, 110]],
+    ['V(V)', { V5: 0.4 }, [65, 110]],
+  ] as const)('%s, %j mol/L, has its hue at 1 cm', (_, concentration, [from, to]) => {
+    const { lab } = through(concentration, 1);
+    expect(chromaOf(lab)).toBeGreaterThan(20);
+    expect(hueOf(lab)).toBeGreaterThan(from);
+    expect(hueOf(lab)).toBeLessThan(to);
+  });
+
+  // Common practice, no source: a mixture of V(IV) and V(V) is dark green, darker than either part alone. With this calibration it is green
+  // to blue green; from 0.15 mol/L each on it is so dark at 1 cm (L* 2) that no hue is seen.
+  test.each([[0.08], [0.1]])(
+    'V(IV) and V(V), %d mol/L each, are darker than both parts, green to blue green',
+    (each) => {
+      const mixture = through({ V4: each, V5: each }, 1).lab;
+      expect(mixture[0]).toBeLessThan(through({ V4: each }, 1).lab[0] - 25);
+      expect(mixture[0]).toBeLessThan(through({ V5: each }, 1).lab[0] - 25);
+      expect(hueOf(mixture)).toBeGreaterThan(110);
+      expect(hueOf(mixture)).toBeLessThan(215);
+    },
+  );
+});
 
 describe('colour difference', () => {
   // Sharma, Wu, Dalal, Color Res. Appl. 2005, 30, 21-30, table 1: L1 a1 b1 L2 a2 b2 ΔE00, four decimals.

@@ -211,11 +211,10 @@ function labelPlaces(
   x: Scale,
   wavelength: readonly number[],
 ): { name: string; left: number; top: number }[] {
+  const ends = unbrokenRuns(wavelength).flatMap((run) => [x(wavelength[run[0]!]!), x(wavelength[run.at(-1)!]!)]);
+  const hasRoom = (i: number): boolean => ends.every((end) => Math.abs(x(wavelength[i]!) - end) > LABEL_ROOM);
   return layers.flatMap((layer) => {
-    const thickness = layer.map((pair, i) => {
-      const left = x(wavelength[i]!);
-      return left < LEFT + LABEL_ROOM || left > RIGHT - LABEL_ROOM ? 0 : Math.abs(y(pair[1]!) - y(pair[0]!));
-    });
+    const thickness = layer.map((pair, i) => (hasRoom(i) ? Math.abs(y(pair[1]!) - y(pair[0]!)) : 0));
     const i = thickness.indexOf(Math.max(...thickness));
     if (thickness[i]! < 9) return [];
     return [{ name: layer.key, left: x(wavelength[i]!), top: (y(layer[i]![0]!) + y(layer[i]![1]!)) / 2 + 4 }];

@@ -6,6 +6,7 @@ import { AMPERE_HOURS_PER_MOLE } from '../../units.ts';
 import { DepthPicture } from '../pictures/depthPicture.tsx';
 import { OxidationLadder, type Ladder } from '../pictures/oxidationLadder.tsx';
 import { RemediesPicture } from '../pictures/remediesPicture.tsx';
+import { driftText } from '../driftText.ts';
 import { decimalsFor, percentText, quantityText } from '../quantityText.ts';
 import { standingText } from '../standingText.ts';
 import { Answer, Answers } from './answers.tsx';
@@ -161,6 +162,12 @@ function BalanceTable({ balance }: { balance: SystemBalance }) {
         hold.
         {balance.assumed.length > 0 && ` Assumed: ${balance.assumed.join('; ')}.`}
       </p>
+      {balance.drift && (
+        <p>
+          Over {balance.drift.visits} visits: net oxidation moves by {driftText(balance.drift.netOxidation)}. Vanadium
+          shift moves by {driftText(balance.drift.vanadiumShift)}.
+        </p>
+      )}
     </>
   );
 }
