@@ -2,18 +2,22 @@ import { TankhueError } from '../errors.ts';
 import type { Finding } from '../finding.ts';
 import type { Association } from '../electrolyte/association.ts';
 import { PAIRS, speciesOfPair, type Pair } from '../electrolyte/species.ts';
-import { assumedPathUncertainty, DEFAULT_CEILING } from '../estimation/cuvette.ts';
+import { DEFAULT_CEILING } from '../estimation/cuvette.ts';
 import { foreignSpectra, type ForeignSpectrum } from '../estimation/foreign.ts';
 import { DEFAULT_MODE_PRIORS, type ModePriors } from '../estimation/namedModes.ts';
-import { resample } from '../spectrum/resample.ts';
 import type { Calibration, Grid, Matrix, PairCalibration, StandardRecord } from './calibration.ts';
 import { candidateModels, choose, fitChoicesFor, type AssociationPlan, type Choice } from './choose.ts';
+import { findDoubts } from './doubts.ts';
+import { fitFindings } from './fitFindings.ts';
 import { fitPair, type PairStandard, type PairStandards } from './fitPair.ts';
-import { commonGrid, wavelengthsOf } from './grid.ts';
+import { commonGrid } from './grid.ts';
 import { faultScalesOf, pairRecord } from './pairRecord.ts';
-import { dealToPairs, totalVanadiumOf, type Standard } from './standard.ts';
+import { sheetDoubts } from './sheetDoubts.ts';
+import { dealToPairs, type Standard } from './standard.ts';
 import { leaveGroupsOut } from './validate.ts';
 import { standardRecords } from './standardRecords.ts';
+import { standardsOnGrid } from './standardsOnGrid.ts';
+import { totalBlocks } from './totalBlocks.ts';
 
 export interface CalibrationRequest {
   readonly name: string;
@@ -31,10 +35,8 @@ export interface CalibrationRequest {
   readonly provenance: Calibration['provenance'];
 }
 
-/** Relative freedom of a label of unstated uncertainty, where validation lets labels move (common practice, no source). */
-const ASSUMED_LABEL_FREEDOM = 0.005;
-/** Part of the standards that may lack a wavelength before the wavelength goes; beyond it the standards go. */
-const TOLERATED_GAPS = 0.1;
+/** Fewest standards of a pair: two spectra, and one standard that can contradict them. */
+const FEWEST_STANDARDS = 3;
 const SHARE_FOLDS = 4;
 
 /**
@@ -69,12 +71,15 @@ export function calibrate(
     request.grid ?? {},
   );
   const priors = request.priors ?? DEFAULT_MODE_PRIORS;
-  const findings: Finding[] = [...without].map((name) => ({
-    code: 'left-out-by-decision',
-    severity: 'note',
-    message: `standard ${name} was left out by decision`,
-    hint: 'write down why; the file keeps the name',
-  }));
+  const findings: Finding[] = [
+    ...[...without].map((name) => ({
+      code: 'left-out-by-decision',
+      severity: 'note' as const,
+      message: `standard ${name} was left out by decision`,
+      hint: 'write down why; the file keeps the name',
+    })),
+    ...sheetDoubts(kept),
+  ];
   const built: BuiltPair[] = [];
   const records: StandardRecord[] = [];
   const refusals: TankhueError[] = [];
@@ -83,10 +88,9 @@ export function calibrate(
     const members = dealt.get(pair)!;
     if (!members.some((standard) => standard.role === 'calibration')) continue;
     try {
-      const one = buildPair(pair, members, grid, request, priors, (done) => progress(pair, done));
+      const one = buildPair(pair, members, grid, request, priors, findings, (done) => progress(pair, done));
       built.push(one);
       records.push(...one.records);
-      findings.push(...one.findings);
     } catch (error) {
       if (!(error instanceof TankhueError)) throw error;
       refusals.push(error);
@@ -147,7 +151,6 @@ interface BuiltPair {
   readonly choice: Choice;
   readonly pair: PairCalibration;
   readonly records: readonly StandardRecord[];
-  readonly findings: readonly Finding[];
 }
 
 function buildPair(
@@ -156,77 +159,25 @@ function buildPair(
   grid: Grid,
   request: CalibrationRequest,
   priors: ModePriors,
+  findings: Finding[],
   progress: (done: number) => void,
 ): BuiltPair {
-  const findings: Finding[] = [];
-  const { standards, used } = onGrid(pair, members, grid, request.ceiling ?? DEFAULT_CEILING, findings);
+  const { standards, used } = standardsOnGrid(pair, members, grid, request.ceiling ?? DEFAULT_CEILING, findings);
   const fitted = standards.rows.filter((_, i) => used[i]!.role === 'calibration');
   const training: PairStandards = { ...standards, rows: fitted };
   requireCompositions(training);
   const models = modelsThatCanBeTold(training, candidateModels(pair, request.associations ?? []), findings);
   const grouped = withGroups(training, models, findings);
   const chosen = choose(grouped, models, true, priors, progress);
-  const fit = fitPair(grouped, fitChoicesFor(grouped, chosen.choice));
-  if (!fit.converged)
-    findings.push({
-      code: 'not-converged',
-      severity: 'caution',
-      message: `${pair}: the fit of paths${chosen.choice.labelsMove ? ' and labels' : ''} still moved after its last round`,
-      hint: 'look at the standards with the largest movement; one of them may be from another cell',
-    });
+  const choices = fitChoicesFor(grouped, chosen.choice);
+  const fit = fitPair(grouped, choices);
   const record = pairRecord(grouped, fit, chosen, priors);
-  const { records, doubts } = standardRecords(standards, used, fit, record, priors);
-  return { standards: grouped, choice: chosen.choice, pair: record, records, findings: [...findings, ...doubts] };
-}
-
-/** Absorbances on the wavelengths that (nearly) all standards have; standards that lack some of those are set aside by name. */
-function onGrid(
-  pair: Pair,
-  members: readonly Standard[],
-  grid: Grid,
-  ceiling: number,
-  findings: Finding[],
-): { standards: PairStandards; used: Standard[] } {
-  const axis = wavelengthsOf(grid);
-  const curves = members.map((standard) =>
-    resample(standard.spectrum, axis, grid.step).absorbance.map((value) => (value > ceiling ? NaN : value)),
-  );
-  const keep = [...axis.keys()].filter(
-    (i) => curves.filter((curve) => !Number.isFinite(curve[i])).length <= TOLERATED_GAPS * curves.length,
-  );
-  const complete = members.map((_, s) => keep.every((i) => Number.isFinite(curves[s]![i])));
-  members.forEach((standard, s) => {
-    if (complete[s]) return;
-    findings.push({
-      code: 'over-ceiling',
-      severity: 'caution',
-      message: `standard ${standard.name} was set aside: it lacks values or reads above ${ceiling} where the others can be read`,
-      hint: 'measure it in a thinner cell, or raise --ceiling if the photometer was verified to go higher',
-    });
-  });
-  const used = members.filter((_, s) => complete[s]);
-  const [lower, higher] = speciesOfPair(pair);
-  const rows = used.map((standard): PairStandard => {
-    const concentration = totalVanadiumOf(standard) / standard.dilution;
-    return {
-      name: standard.name,
-      group: standard.preparation ?? `${totalVanadiumOf(standard).toPrecision(3)} mol/L`,
-      absorbance: Float64Array.from(keep, (i) => curves[members.indexOf(standard)]![i]!),
-      pathLength: standard.pathLength,
-      pathUncertainty:
-        standard.pathUncertainty === null
-          ? assumedPathUncertainty(standard.pathLength)
-          : standard.pathUncertainty / standard.pathLength,
-      lower: standard.concentration[lower] / standard.dilution,
-      higher: standard.concentration[higher] / standard.dilution,
-      labelUncertainty: (standard.concentrationUncertainty ?? 0) / standard.dilution,
-      labelFreedom:
-        standard.concentrationUncertainty === null
-          ? ASSUMED_LABEL_FREEDOM * concentration
-          : standard.concentrationUncertainty / standard.dilution,
-    };
-  });
-  return { standards: { pair, wavelength: Float64Array.from(keep, (i) => axis[i]!), rows }, used };
+  const checks = standards.rows.filter((_, i) => used[i]!.role === 'check');
+  findings.push(...fitFindings(record, fit, checks, priors));
+  const doubts = findDoubts(grouped, fit, choices, priors);
+  const { records, findings: accusations } = standardRecords(standards, used, fit, record, doubts, priors);
+  findings.push(...accusations);
+  return { standards: grouped, choice: chosen.choice, pair: record, records };
 }
 
 /** @throws TankhueError `too-few-compositions` */
@@ -240,13 +191,20 @@ function requireCompositions(standards: PairStandards): void {
       'standards sheet',
       `add a standard with another share of ${higher}`,
     );
+  if (standards.rows.length < FEWEST_STANDARDS)
+    throw new TankhueError(
+      'too-few-compositions',
+      `${FEWEST_STANDARDS} standards of ${lower} and ${higher} are needed, so that one can contradict the others; ${standards.rows.length} found`,
+      'standards sheet',
+      'make seven shares at three totals, or at least three shares',
+    );
 }
 
 /** per cent of the higher species, whole */
 const shareOf = (row: PairStandard): number => Math.round((100 * row.higher) / (row.lower + row.higher));
 const distinctShares = (standards: PairStandards): number[] => [...new Set(standards.rows.map(shareOf))];
-const distinctTotals = (standards: PairStandards): number[] => [
-  ...new Set(standards.rows.map((row) => Number((row.lower + row.higher).toPrecision(2)))),
+const distinctTotals = (standards: PairStandards): string[] => [
+  ...new Set(totalBlocks(standards.rows.map((row) => row.lower + row.higher))),
 ];
 
 const isSelfAssociation = (plan: AssociationPlan): boolean => Object.keys(plan.association.reactants).length === 1;
@@ -288,7 +246,7 @@ function modelsThatCanBeTold(
 }
 
 /**
- * Groups for validation: preparations, else total concentrations, as `onGrid` wrote them. Where leaving a whole group out would leave one
+ * Groups for validation: preparations, else total concentrations, as `standardsOnGrid` wrote them. Where leaving a whole group out would leave one
  * total concentration and the models carry self-association, or where there is one group, shares are left out instead; that validation
  * does not see errors that a preparation shares, and says so.
  */

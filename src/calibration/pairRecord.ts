@@ -31,6 +31,12 @@ import {
 /** Significant digits kept in a calibration: below the noise of any photometer, so that the file stays small and reads back exactly. */
 const KEPT_DIGITS = 9;
 
+/**
+ * Where no standard could be left out: labels made by volume are good to one or two points, thin cells to some per cent (common practice,
+ * no source; published spectra show up to 0.8 points and 2.6 %). Freedom 8: known to 25 % (JCGM 100:2008, G.4.2).
+ */
+const UNVALIDATED = { share: 0.015, total: 0.03, freedom: 8 };
+
 /** Everything a calibration says of one pair. */
 export function pairRecord(
   standards: PairStandards,
@@ -38,12 +44,14 @@ export function pairRecord(
   chosen: Chosen,
   priors: ModePriors,
 ): PairCalibration {
-  const excess = excessOf(chosen.leftOut);
   const model = rounded(fit.model);
   const logarithms = chosen.leftOut.map((x) => Math.log(x.reducedChiSquare));
   const mean = average(logarithms);
   const groups = [...new Set(standards.rows.map((row) => row.group))];
-  const betweenGroup = { ...excess, freedom: Math.max(1, chosen.leftOut.length - 1) };
+  const betweenGroup =
+    chosen.leftOut.length > 0
+      ? { ...excessOf(chosen.leftOut), freedom: Math.max(1, chosen.leftOut.length - 1) }
+      : UNVALIDATED;
   return {
     pair: standards.pair,
     model,
@@ -217,6 +225,7 @@ function designOf(standards: PairStandards, model: PairModel): PairCalibration['
   return { condition: ratio, weak: inWords(standards, model, ratio, weakest) };
 }
 
+export const NO_WEAK_DIRECTION = 'no weak direction';
 /** Condition of scaled amounts above which a direction is called weak. */
 const WELL_CONDITIONED = 15;
 
@@ -231,7 +240,7 @@ function inWords(standards: PairStandards, model: PairModel, ratio: number, weak
   ].filter(Boolean);
   const telling =
     ratio > WELL_CONDITIONED ? `${involved.join(' and ')} are hard to tell apart with these compositions` : '';
-  return [telling, ...gaps].filter(Boolean).join('; ') || 'no weak direction';
+  return [telling, ...gaps].filter(Boolean).join('; ') || NO_WEAK_DIRECTION;
 }
 
 const romanName = (species: Parameters<typeof oxidationNumber>[0]): string =>

@@ -1,11 +1,11 @@
 // What        What each standard did in the fit, and which ones are in doubt.
-// Equation    share doubt = share found by the finished calibration − label; suspicious above 3 × the robust scatter of its pair and 1 point.
-//             Influence on a mid-range sample: −gain·ℓ yᵀ(FᵀF)⁻¹ f r/(1 − h), the change when this standard alone is left out.
+// Equation    share doubt = share found by a fit of the standards nobody doubts − label. Influence on a mid-range sample:
+//             −gain·ℓ yᵀ(FᵀF)⁻¹ f r/(1 − h), the change when this standard alone is left out.
 // Why so      A standard that misses by two points where its neighbours miss by a few tenths is a mixing error, not noise; it is named with
 //             the likeliest reason and never dropped.
 // Valid for   pairs of five standards or more; below that nobody is accused.
 // Units       share 1.
-// Source      leverage and deletion formula of linear least squares; limits ours.
+// Source      leverage and deletion formula of linear least squares.
 import type { Finding } from '../finding.ts';
 import { newAmounts } from '../electrolyte/forwardModel.ts';
 import { speciesOfPair } from '../electrolyte/species.ts';
@@ -14,45 +14,32 @@ import { prepare } from '../estimation/prepare.ts';
 import { reduce, solve } from '../estimation/solve.ts';
 import { dot } from '../numerics/gramSchmidt.ts';
 import type { PairCalibration, StandardRecord } from './calibration.ts';
+import { doubtReason, findIn, shareOf, type Found } from './doubtReason.ts';
+import type { Doubts } from './doubts.ts';
 import type { PairFit, PairStandard, PairStandards } from './fitPair.ts';
 import type { Standard } from './standard.ts';
-
-const SUSPICIOUS = 3;
-const SMALLEST_DOUBT = 0.01;
 
 export function standardRecords(
   standards: PairStandards,
   used: readonly Standard[],
   fit: PairFit,
   record: PairCalibration,
+  doubts: Doubts,
   priors: ModePriors,
-): { records: StandardRecord[]; doubts: Finding[] } {
+): { records: StandardRecord[]; findings: Finding[] } {
   const prepared = prepare(record.model, namedModes(record.model.wavelength, priors));
+  const undoubted = prepare(doubts.fit.model, namedModes(record.model.wavelength, priors));
   const fittedRows = standards.rows.filter((_, i) => used[i]!.role === 'calibration');
-  const found = standards.rows.map((row) =>
-    solve(prepared, reduce(prepared, row.absorbance), {
-      pathLength: row.pathLength,
-      pathUncertainty: row.pathUncertainty,
-      wavelengthUncertainty: priors.wavelengthShift,
-    }),
-  );
-  const doubt = standards.rows.map((row, i) => found[i]!.higher / (found[i]!.lower + found[i]!.higher) - shareOf(row));
-  const scatter = robustScatter(doubt.filter((_, i) => used[i]!.role === 'calibration'));
+  const found = standards.rows.map((row) => findIn(undoubted, row, priors));
+  const accused = found.filter(({ row }) => doubts.doubted.has(row.name));
+  const reasons = new Map(accused.map((one) => [one.row.name, doubtReason(one, accused)]));
   const [lower, higher] = speciesOfPair(standards.pair);
-  const doubts: Finding[] = [];
   const records = standards.rows.map((row, i): StandardRecord => {
     const standard = used[i]!;
     const fitted = fittedRows.findIndex((candidate) => candidate.name === row.name);
-    const moved = fitted >= 0 ? fit.moved[fitted]! : { path: found[i]!.pathShift, lower: 0, higher: 0 };
+    const path = fitted >= 0 ? fit.moved[fitted]!.path : found[i]!.pathShift;
     const residual = fitted >= 0 ? fit.residuals[fitted]! : null;
-    const reason = fittedRows.length >= 5 ? reasonFor(row, doubt, i, moved.path, scatter, standards.rows) : null;
-    if (reason)
-      doubts.push({
-        code: 'standard-in-doubt',
-        severity: 'caution',
-        message: `standard ${row.name} reads ${(100 * doubt[i]!).toFixed(1)} points of ${higher} off its label, its neighbours ${(100 * scatter).toFixed(1)}: ${reason}`,
-        hint: `remake or measure it again; leave it out by decision with --without "${row.name}"`,
-      });
+    const doubt = found[i]!.share - shareOf(row);
     return {
       name: row.name,
       pair: standards.pair,
@@ -64,51 +51,28 @@ export function standardRecords(
       path: row.pathLength,
       dilution: standard.dilution,
       concentration: { [lower]: standard.concentration[lower], [higher]: standard.concentration[higher] },
-      pathMoved: moved.path,
-      pathMovedInUncertainty: moved.path / row.pathUncertainty,
-      shareDoubt: doubt[i]!,
-      shareDoubtInUncertainty: doubt[i]! / Math.max(scatter, 1e-6),
+      pathMoved: path,
+      pathMovedInUncertainty: path / row.pathUncertainty,
+      shareDoubt: doubt,
+      shareDoubtInUncertainty: doubt / doubts.scatter,
       leverage: fitted >= 0 ? fit.linear.leverage[fitted]! : 0,
       residualRms: residual ? Math.sqrt(dot(residual, residual) / residual.length) : 0,
       influence: fitted >= 0 ? influenceOf(fitted, fittedRows, fit, prepared) : 0,
-      doubt: reason,
+      doubt: reasons.get(row.name) ?? null,
     };
   });
-  return { records, doubts };
+  return {
+    records,
+    findings: accused.map((one) => accusation(one, reasons.get(one.row.name)!, higher, doubts.scatter)),
+  };
 }
 
-const shareOf = (row: PairStandard): number => row.higher / (row.lower + row.higher);
-
-/** 1.4826 × median absolute deviation from zero, at least a tenth of a point. */
-function robustScatter(doubt: readonly number[]): number {
-  const sorted = doubt.map(Math.abs).sort((a, b) => a - b);
-  return Math.max(0.001, 1.4826 * (sorted[Math.floor(sorted.length / 2)] ?? 0));
-}
-
-function reasonFor(
-  row: PairStandard,
-  doubt: readonly number[],
-  index: number,
-  pathMoved: number,
-  scatter: number,
-  rows: readonly PairStandard[],
-): string | null {
-  const miss = doubt[index]!;
-  if (Math.abs(pathMoved) > 4 * row.pathUncertainty)
-    return `its path would have to be ${(100 * pathMoved).toFixed(0)} % off: wrong cell, or the wrong total on the label`;
-  if (Math.abs(miss) < Math.max(SMALLEST_DOUBT, SUSPICIOUS * scatter)) return null;
-  const found = shareOf(row) + miss;
-  const twin = rows.findIndex(
-    (other, j) =>
-      j !== index &&
-      Math.abs(shareOf(other) - found) < 2 * scatter &&
-      Math.abs(shareOf(other) + doubt[j]! - shareOf(row)) < 2 * scatter &&
-      Math.abs(doubt[j]!) > SUSPICIOUS * scatter,
-  );
-  if (twin >= 0) return `its label and that of ${rows[twin]!.name} seem to be swapped`;
-  if (Math.abs(1 - shareOf(row) - found) < 2 * scatter) return 'its two concentrations seem to be swapped on the label';
-  return 'mixed wrong, or partly oxidised before the scan';
-}
+const accusation = ({ row, share, totalError }: Found, reason: string, higher: string, scatter: number): Finding => ({
+  code: 'standard-in-doubt',
+  severity: 'caution',
+  message: `standard ${row.name} reads ${(100 * (share - shareOf(row))).toFixed(1)} points of ${higher} and ${(100 * totalError).toFixed(1)} % of vanadium off its label, the others scatter by ${(100 * scatter).toFixed(1)} points: ${reason}`,
+  hint: `remake or measure it again; leave it out by decision with --without "${row.name}"`,
+});
 
 /** Change of the share of a half-and-half sample at the mean total and path when this standard alone goes, paths and constants held. */
 function influenceOf(
