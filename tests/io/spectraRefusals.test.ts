@@ -109,6 +109,7 @@ describe('what can be read in two ways is refused with both and the option that 
       [/--unit A \(absorbance 0\.980/, /--unit %T \(2\.01/, /--unit T \(0\.00877/],
     ],
     ['a fraction or per cent', 'nm,T\n400,1.97\n401,0.98\n', 'value-unit', 's.csv:2:2', [/--unit %T/, /--unit T/]],
+    ['per cent that cannot be', 'nm,%T\n400,970\n401,980\n', 'value-unit', 's.csv:2:2', [/--unit %T/, /--unit mA/]],
     [
       'absorbance that cannot be',
       'nm,Absorbance\n400,97\n401,98\n',
