@@ -1,24 +1,16 @@
 import { TankhueError, TankhueErrors } from '../errors.ts';
 import type { Standard } from '../calibration/standard.ts';
 import { SPECIES, type Species } from '../electrolyte/species.ts';
-import { centimetresFromMillimetres, kelvinFromCelsius } from '../units.ts';
+import { CUVETTE_COLUMNS, cuvetteCells } from './cuvetteCells.ts';
 import { readSheet, RowReader } from './sheet.ts';
 
 export const STANDARDS_COLUMNS = [
   'standard',
-  'file',
-  'column',
-  'blank_file',
-  'blank_column',
-  'path_mm',
-  'path_u_mm',
-  'dilution',
-  'temperature_C',
+  ...CUVETTE_COLUMNS,
   ...SPECIES.map((species) => `${species}_mol_L`),
   'u_mol_L',
   'preparation',
   'role',
-  'acid_mol_L',
 ] as const;
 
 /** A row of a standards sheet: a standard without its spectrum yet. */
@@ -41,39 +33,19 @@ export function readStandardsSheet(
   const seen = new Set<string>();
   const rows = sheet.rows.map((row): StandardsRow => {
     const read = new RowReader(row, sheet.decimalComma);
-    const name = read.text('standard') ?? '';
-    if (name === '')
-      read.refuse(
-        'name-missing',
-        'standard',
-        'expected a name for the standard; received an empty cell',
-        'number the fillings: A-1, A-2',
-      );
-    else if (seen.has(name))
-      read.refuse(
-        'name-repeats',
-        'standard',
-        `expected every standard to have a name of its own; received "${name}" twice`,
-        'number the fillings: A-1, A-2',
-      );
-    seen.add(name);
-    const file = read.text('file');
-    if (file === null)
-      read.refuse(
-        'file-missing',
-        'file',
-        'expected the file of the spectrum; received an empty cell',
-        'write its name, relative to the sheet',
-      );
-    const pathLength = read.number('path_mm', (value) => value > 0, 'a path above 0 mm');
-    if (pathLength === null && read.text('path_mm') === null)
+    const cuvette = cuvetteCells(read, {
+      column: 'standard',
+      example: 'number the fillings: A-1, A-2',
+      repeat: 'number the fillings: A-1, A-2',
+      seen,
+    });
+    if (cuvette.pathLength === null && read.text('path_mm') === null)
       read.refuse(
         'path-unknown',
         'path_mm',
         'expected the path of the standard; received an empty cell',
         'write the number engraved on the cell, in mm',
       );
-    const pathUncertainty = read.number('path_u_mm', (value) => value > 0, 'an uncertainty above 0 mm');
     const uncertainty = read.number('u_mol_L', (value) => value > 0, 'an uncertainty above 0 mol/L');
     const concentration = Object.fromEntries(
       SPECIES.map((species) => [
@@ -89,22 +61,14 @@ export function readStandardsSheet(
         `expected calibration or check; received "${role}"`,
         'write check for a standard that only tests the calibration',
       );
-    const temperature = read.number('temperature_C', (value) => value > -20 && value < 100, '-20 to 100 °C');
     const result: StandardsRow = {
-      name,
-      file: file ?? '',
-      column: read.text('column'),
-      blankFile: read.text('blank_file'),
-      blankColumn: read.text('blank_column'),
-      pathLength: centimetresFromMillimetres(pathLength ?? NaN),
-      pathUncertainty: pathUncertainty === null ? null : centimetresFromMillimetres(pathUncertainty),
-      dilution: read.number('dilution', (value) => value >= 1, 'a dilution of 1 or more') ?? 1,
-      temperature: temperature === null ? null : kelvinFromCelsius(temperature),
+      ...cuvette,
+      pathLength: cuvette.pathLength ?? NaN,
+      dilution: cuvette.dilution ?? 1,
       concentration,
       concentrationUncertainty: uncertainty,
       preparation: read.text('preparation'),
       role: role === 'check' ? 'check' : 'calibration',
-      acid: read.number('acid_mol_L', (value) => value > 0, 'more than 0 mol/L'),
       where: `${fileName}:${row.line}`,
     };
     problems.push(...read.problems);

@@ -1,4 +1,5 @@
-import { readSheet } from './sheet.ts';
+import type { TankDetails } from '../tanks/fromAssays.ts';
+import { readSheet, type RowReader } from './sheet.ts';
 import { readRows, SAMPLES_COLUMNS, samplesRow, type SamplesRow, type SheetOf } from './samplesSheet.ts';
 
 export const TANKS_COLUMNS = [
@@ -21,26 +22,25 @@ export const TANKS_COLUMNS = [
   'act_oxidation',
 ] as const;
 
-/** A cuvette and the tank it came from. Null: nobody said. */
-export interface TanksRow extends SamplesRow {
-  readonly tank: string | null;
-  /** L; null for a composite */
-  readonly volume: number | null;
-  readonly volumeUncertainty: number | null;
-  readonly cellsInSeries: number | null;
-  readonly targetOxidationState: number | null;
-  /** V */
-  readonly openCircuit: number | null;
-  readonly formalPotential: number | null;
-  /** mol on this side when it was filled */
-  readonly fillVanadium: number | null;
-  /** volumes drawn from the two tanks for a composite, any one unit */
-  readonly compositeShares: { readonly negative: number; readonly positive: number } | null;
+/** A cuvette and the tank it came from. Null: nobody said. Volumes in L, amounts in mol of this side, potentials in V. */
+export interface TanksRow extends SamplesRow, Omit<TankDetails, 'takenAt'> {
   readonly chargeCounter: number | null;
   readonly freeVolume: number | null;
-  /** the plant's own limits of |ν − ν*| */
-  readonly watchOxidation: number | null;
-  readonly actOxidation: number | null;
+}
+
+/** A cell that says nothing without the one beside it. */
+function needsBoth(read: RowReader, one: string, other: string): void {
+  for (const [given, empty] of [
+    [one, other],
+    [other, one],
+  ] as const)
+    if (read.text(given) !== null && read.text(empty) === null)
+      read.refuse(
+        'cell-alone',
+        empty,
+        `expected ${empty} beside ${given}; received an empty cell`,
+        `fill in both, or leave both empty`,
+      );
 }
 
 export function readTanksSheet(bytes: Uint8Array, fileName: string): SheetOf<TanksRow> {
@@ -58,6 +58,8 @@ export function readTanksSheet(bytes: Uint8Array, fileName: string): SheetOf<Tan
         'expected the volume of the tank; received an empty cell',
         'read the level and write the litres',
       );
+    needsBoth(read, 'fill_volume_L', 'fill_vanadium_mol_L');
+    needsBoth(read, 'composite_share_negative', 'composite_share_positive');
     const fillVolume = positive('fill_volume_L', 'L');
     const fillConcentration = positive('fill_vanadium_mol_L', 'mol/L');
     const negativeShare = positive('composite_share_negative', 'mL');

@@ -5,14 +5,19 @@ import type { CompositeReading, PlantReading, TankReading } from './reading.ts';
 /** What a sheet says of the tank a cuvette came from; null: nobody said. */
 export interface TankDetails {
   readonly tank: string | null;
+  /** L; null for a composite */
   readonly volume: number | null;
   readonly volumeUncertainty: number | null;
   readonly cellsInSeries: number | null;
   readonly targetOxidationState: number | null;
+  /** V of the string */
   readonly openCircuit: number | null;
   readonly formalPotential: number | null;
+  /** mol on this side when it was filled */
   readonly fillVanadium: number | null;
+  /** volumes drawn from the two tanks for a composite, any one unit */
   readonly compositeShares: { readonly negative: number; readonly positive: number } | null;
+  /** the plant's own limits of |ν − ν*| */
   readonly watchOxidation: number | null;
   readonly actOxidation: number | null;
   readonly takenAt: number | null;

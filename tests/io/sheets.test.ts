@@ -275,6 +275,14 @@ describe('a tanks sheet', () => {
     expect(tanks(`${header}${row}\n`).problems).toMatchObject([{ code, where }]);
   });
 
+  test.each([
+    ['a fill volume without its concentration', 'fill_volume_L,fill_vanadium_mol_L', '1900,', 'tanks.csv:2:6'],
+    ['one share of a composite', 'composite_share_negative,composite_share_positive', ',1.5', 'tanks.csv:2:5'],
+  ])('%s is refused: it would count for nothing', (_, columns, cells, where) => {
+    const { problems } = tanks(`sample,side,file,volume_L,${columns}\nN1,negative,n.csv,2000,${cells}\n`);
+    expect(problems).toMatchObject([{ code: 'cell-alone', where }]);
+  });
+
   test('a volume in another unit is refused', () => {
     expect(refusals(() => tanks('sample,side,file,volume_m3\nN1,negative,n.csv,2\n'))[0]).toMatchObject({
       code: 'column-unit',
