@@ -45,7 +45,6 @@ export class WorkerPool<Task, Answer> {
       if (!worker) return;
       const waiting = this.queue.shift()!;
       this.busy.set(worker, waiting);
-      // oxlint-disable-next-line unicorn/require-post-message-target-origin -- a thread, not a window
       worker.postMessage(waiting.task);
     }
   }

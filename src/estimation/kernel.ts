@@ -25,14 +25,29 @@ const POINT_SIZE = 19;
 
 const MOST_STEPS = 60;
 /** Decrease still to be had after the last step, by the rate at which steps shrink: 3e-7 standard uncertainties. */
-const FINISHED = 1e-13;
+export const FINISHED = 1e-13;
 /** Misfit above that of the linear solution with free complexes from which other minima are looked for. */
-const SUSPICIOUS = 12;
+export const SUSPICIOUS = 12;
 const STARTS = 3;
 /** Relative error of an objective: a difference of sums of squares a million times as large. */
-const ROUNDING = 1e-14;
+export const ROUNDING = 1e-14;
+
+/** Products of the whitened spectra B and their shifts B′, row-major k × k. */
+export interface KernelMatrices {
+  /** BᵀB */
+  readonly gram: Float64Array;
+  /** BᵀB′ */
+  readonly cross: Float64Array;
+  /** BᵀB′ + B′ᵀB */
+  readonly both: Float64Array;
+  /** B′ᵀB′ */
+  readonly gramShifted: Float64Array;
+  /** (BᵀB)⁻¹ */
+  readonly inverse: Float64Array;
+}
 
 export interface Kernel {
+  readonly matrices: KernelMatrices;
   /** rows w of the map spectrum → projections, each as long as `prepared.used` */
   readonly projector: readonly Float64Array[];
   /** lower, higher (mol/L in the cuvette), s, δ of the last solution; NaN where there is none */
@@ -49,25 +64,10 @@ export function makeKernel(prepared: Prepared, priors: CuvettePriors): Kernel {
   const k = prepared.amountCount;
   const dimension = 2 * k;
   const { pathLength } = priors;
-  const pathPrecision = 1 / Math.max(priors.pathUncertainty, TIGHTEST) ** 2;
-  const shiftPrecision = 1 / Math.max(priors.wavelengthUncertainty, TIGHTEST) ** 2;
+  const { pathPrecision, shiftPrecision } = precisionsOf(priors);
   const { image, projector: basis, model } = prepared;
-  const products = (rows: readonly Float64Array[], columns: readonly Float64Array[]): Float64Array =>
-    Float64Array.from({ length: k * k }, (_, n) => dot(rows[Math.floor(n / k)]!, columns[n % k]!));
-  const plain = image.slice(0, k);
-  const shifted = image.slice(k);
-  const gram = products(plain, plain);
-  const cross = products(plain, shifted);
-  const both = cross.map((value, n) => value + cross[(n % k) * k + Math.floor(n / k)]!);
-  const gramShifted = products(shifted, shifted);
-  const inverse = inverseOf(gram, k);
-  if (!inverse)
-    throw new TankhueError(
-      'spectra-alike',
-      `expected spectra of ${model.pair} that can be told apart; received some that cannot`,
-      'calibration, wavelengths',
-      'use more of the calibration’s range',
-    );
+  const matrices = kernelMatrices(prepared);
+  const { gram, both, cross, gramShifted, inverse } = matrices;
   const extra = kernelAmounts(model);
   const extras = k - 2;
   const design = model.designInverse;
@@ -195,7 +195,8 @@ export function makeKernel(prepared: Prepared, priors: CuvettePriors): Kernel {
         promised += step[p]! * current[GRADIENT + p]!;
         trial[p] = current[p]! + step[p]!;
       }
-      if (promised * Math.min(1, promised / before) < FINISHED) {
+      // Nothing promised, nothing before: 0 · (0/0) is not below, so the question is asked the other way round.
+      if (!(promised * Math.min(1, promised / before) >= FINISHED)) {
         for (let p = 0; p < 4; p++) current[p] = trial[p]!;
         return true;
       }
@@ -287,7 +288,38 @@ export function makeKernel(prepared: Prepared, priors: CuvettePriors): Kernel {
     return whole + leverage * spectral;
   };
 
-  return { projector: normalProjector(image, basis), theta, solve, leverage, variance };
+  return { matrices, projector: normalProjector(image, basis), theta, solve, leverage, variance };
+}
+
+/** One over the squares of the priors of path and wavelength. */
+export const precisionsOf = (priors: CuvettePriors): { pathPrecision: number; shiftPrecision: number } => ({
+  pathPrecision: 1 / Math.max(priors.pathUncertainty, TIGHTEST) ** 2,
+  shiftPrecision: 1 / Math.max(priors.wavelengthUncertainty, TIGHTEST) ** 2,
+});
+
+/** @throws TankhueError `spectra-alike` */
+function kernelMatrices({ image, amountCount: k, model }: Prepared): KernelMatrices {
+  const products = (rows: readonly Float64Array[], columns: readonly Float64Array[]): Float64Array =>
+    Float64Array.from({ length: k * k }, (_, n) => dot(rows[Math.floor(n / k)]!, columns[n % k]!));
+  const plain = image.slice(0, k);
+  const shifted = image.slice(k);
+  const gram = products(plain, plain);
+  const cross = products(plain, shifted);
+  const inverse = inverseOf(gram, k);
+  if (!inverse)
+    throw new TankhueError(
+      'spectra-alike',
+      `expected spectra of ${model.pair} that can be told apart; received some that cannot`,
+      'calibration, wavelengths',
+      'use more of the calibration’s range',
+    );
+  return {
+    gram,
+    cross,
+    both: cross.map((value, n) => value + cross[(n % k) * k + Math.floor(n / k)]!),
+    gramShifted: products(shifted, shifted),
+    inverse,
+  };
 }
 
 /** Rows b_jᵀΣ^(−½): the projections onto the whitened spectra themselves, from those onto their orthonormal basis. */

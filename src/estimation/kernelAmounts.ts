@@ -14,12 +14,16 @@ export interface KernelAmounts {
   evaluate(lower: number, higher: number): void;
 }
 
-/** One-to-one complexes and weak limits of second order have a closed form; anything else goes through the general solver. */
-export function kernelAmounts(model: PairModel): KernelAmounts {
-  const count = model.associations.length;
-  const amount = new Float64Array(count);
-  const byLower = new Float64Array(count);
-  const byHigher = new Float64Array(count);
+/** An association whose amount has a closed form. */
+export interface ClosedTerm {
+  /** 1/K of a one-to-one complex; 0 in the weak limit of second order */
+  readonly dissociation: number;
+  /** reactant number of the lower species: 0, 1 or 2 */
+  readonly lowerOrder: number;
+}
+
+/** The associations of a pair; null where one of them has no closed form. */
+export function closedTerms(model: PairModel): readonly ClosedTerm[] | null {
   const terms = model.associations.map((association, j) => {
     const [lower, higher] = stoichiometryIn(model.pair, association, `associations[${j}]`);
     return { constant: association.associationConstant, lower, higher };
@@ -28,13 +32,24 @@ export function kernelAmounts(model: PairModel): KernelAmounts {
   const closed =
     strong.length <= 1 &&
     terms.every((term) => term.lower + term.higher === 2 && (term.constant === 0 || term.lower === 1));
-  if (!closed) return throughTheSolver(model, amount, byLower, byHigher);
-  const inverse = Float64Array.from(terms, ({ constant }) => (constant > 0 ? 1 / constant : 0));
-  const lowerOrder = Uint8Array.from(terms, ({ lower }) => lower);
+  if (!closed) return null;
+  return terms.map(({ constant, lower }) => ({ dissociation: constant > 0 ? 1 / constant : 0, lowerOrder: lower }));
+}
+
+/** One-to-one complexes and weak limits of second order have a closed form; anything else goes through the general solver. */
+export function kernelAmounts(model: PairModel): KernelAmounts {
+  const count = model.associations.length;
+  const amount = new Float64Array(count);
+  const byLower = new Float64Array(count);
+  const byHigher = new Float64Array(count);
+  const terms = closedTerms(model);
+  if (!terms) return throughTheSolver(model, amount, byLower, byHigher);
+  const inverse = Float64Array.from(terms, ({ dissociation }) => dissociation);
+  const lowerOrders = Uint8Array.from(terms, ({ lowerOrder }) => lowerOrder);
   const evaluate = (a: number, b: number): void => {
     for (let j = 0; j < count; j++) {
       const d = inverse[j]!;
-      const order = lowerOrder[j]!;
+      const order = lowerOrders[j]!;
       if (d > 0) {
         // The form of `boundConcentration`, root written as (a − b)² + (2(a + b) + 1/K)/K.
         const root = Math.sqrt(Math.max(1e-300, (a - b) * (a - b) + (2 * (a + b) + d) * d));

@@ -40,7 +40,10 @@ export function axisMap(axis: Float64Array, grid: Float64Array, step: number): A
     );
     return { from: points[0]!, to: points[points.length - 1]! };
   });
-  const width = needed.reduce((most, { from, to }) => Math.max(most, to - from + 1), 1);
+  const longest = needed.reduce((most, { from, to }) => Math.max(most, to - from + 1), 1);
+  // An even width, so that two points can be taken at once; where there is no room for it, as it is.
+  const span = needed.length > 0 ? needed[needed.length - 1]!.to + 1 : 0;
+  const width = longest + (longest % 2 === 1 && longest < span ? 1 : 0);
   // A window that would reach beyond the points in use starts earlier: a point nobody needs must not spoil a row by being NaN.
   const latest = needed.length > 0 ? needed[needed.length - 1]!.to - width + 1 : 0;
   const start = Int32Array.from(needed, ({ from }) => Math.max(0, Math.min(from, latest)));

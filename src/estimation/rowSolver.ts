@@ -6,7 +6,10 @@
 // Source      ours.
 import type { Pair } from '../electrolyte/species.ts';
 import { assumedPathUncertainty } from './cuvette.ts';
-import { makeKernel } from './kernel.ts';
+import { fastRows, type FastRows } from './fastRows.ts';
+import { makeKernel, precisionsOf } from './kernel.ts';
+import { closedTerms } from './kernelAmounts.ts';
+import type { AxisMap } from './kernelAxis.ts';
 import { DEFAULT_MODE_PRIORS, namedModes, type ModePriors } from './namedModes.ts';
 import type { PairModel } from './pairModel.ts';
 import { prepare, type Whitening } from './prepare.ts';
@@ -42,6 +45,11 @@ export interface RowSolver {
   shareUncertainty(leverage: number, brightness?: number): number;
   /** the same for the total, mol/L in the cuvette */
   totalUncertainty(leverage: number): number;
+  /**
+   * machine code for the plain rows of a matrix; null where there can be none
+   * @param points of the caller's axis
+   */
+  fast(map: AxisMap, points: number): FastRows | null;
 }
 
 /**
@@ -52,11 +60,12 @@ export function rowSolver(record: PairOnGrid, usable: ArrayLike<unknown>, cuvett
   const { pathLength, priors = DEFAULT_MODE_PRIORS } = cuvette;
   const { model, betweenGroup } = record;
   const prepared = prepare(model, namedModes(model.wavelength, priors), usable);
-  const kernel = makeKernel(prepared, {
+  const kernelPriors = {
     pathLength,
     pathUncertainty: cuvette.pathUncertainty ?? assumedPathUncertainty(pathLength),
     wavelengthUncertainty: priors.wavelengthShift,
-  });
+  };
+  const kernel = makeKernel(prepared, kernelPriors);
   const { theta } = kernel;
   const { w, project } = projection(kernel.projector);
   let last: Float64Array = new Float64Array(prepared.used.length);
@@ -81,6 +90,25 @@ export function rowSolver(record: PairOnGrid, usable: ArrayLike<unknown>, cuvett
     totalUncertainty: (leverage) => {
       const between = betweenGroup.total * (theta[0]! + theta[1]!);
       return Math.sqrt(kernel.variance(1, 1, leverage) + between * between);
+    },
+    fast: (map, points) => {
+      const terms = closedTerms(model);
+      if (!terms) return null;
+      const { matrices, projector } = kernel;
+      const { whitening } = prepared;
+      const { designInverse } = model;
+      return fastRows({
+        map,
+        points,
+        projector,
+        matrices,
+        terms,
+        designInverse,
+        whitening,
+        pathLength,
+        ...precisionsOf(kernelPriors),
+        betweenGroup,
+      });
     },
   };
 }

@@ -8,6 +8,7 @@
 // Source      ours.
 import { TankhueError } from '../errors.ts';
 import type { Pair } from '../electrolyte/species.ts';
+import { WANTED, type FastRows } from './fastRows.ts';
 import { averager, axisMap } from './kernelAxis.ts';
 import { rowSolver, type PairOnGrid, type RowCuvette } from './rowSolver.ts';
 
@@ -72,27 +73,64 @@ export function prepare(calibration: PairsOnGrid, wavelengths: Float64Array, opt
   const { theta } = solver;
   const ofLower = options.pair === 'V2/V3';
 
-  const solveMany = (absorbances: Float64Array, out?: ManyResults): ManyResults => {
-    const count = rowsOf(absorbances, wavelengths.length, out);
-    const into = out ?? allResults(count);
+  const points = wavelengths.length;
+  const fast = solver.fast(map, points);
+
+  /** One row by the plain solver. */
+  const solveRow = (absorbances: Float64Array, row: number, into: ManyResults): void => {
     const { stateOfCharge, uncertainty, totalVanadium, totalUncertainty, chiSquare } = into;
-    for (let row = 0; row < count; row++) {
-      average(absorbances, row * wavelengths.length);
-      solver.solve(means);
-      const total = theta[0]! + theta[1]!;
-      if (stateOfCharge) stateOfCharge[row] = (ofLower ? theta[0]! : theta[1]!) / total;
-      if (totalVanadium) totalVanadium[row] = total * dilution;
-      if (uncertainty || totalUncertainty) {
-        const leverage = solver.leverage();
-        if (uncertainty) uncertainty[row] = solver.shareUncertainty(leverage);
-        if (totalUncertainty) totalUncertainty[row] = solver.totalUncertainty(leverage) * dilution;
-      }
-      if (chiSquare) chiSquare[row] = solver.chiSquare();
+    average(absorbances, row * points);
+    solver.solve(means);
+    const total = theta[0]! + theta[1]!;
+    if (stateOfCharge) stateOfCharge[row] = (ofLower ? theta[0]! : theta[1]!) / total;
+    if (totalVanadium) totalVanadium[row] = total * dilution;
+    if (uncertainty || totalUncertainty) {
+      const leverage = solver.leverage();
+      if (uncertainty) uncertainty[row] = solver.shareUncertainty(leverage);
+      if (totalUncertainty) totalUncertainty[row] = solver.totalUncertainty(leverage) * dilution;
     }
+    if (chiSquare) chiSquare[row] = solver.chiSquare();
+  };
+
+  /** As many rows as the fast code takes at once; those it leaves by the plain solver. */
+  const solveBlock = (
+    code: FastRows,
+    absorbances: Float64Array,
+    first: number,
+    end: number,
+    into: ManyResults,
+  ): void => {
+    const { stateOfCharge, uncertainty, totalVanadium, totalUncertainty, chiSquare } = into;
+    code.input.set(absorbances.subarray(first * points, end * points));
+    code.run(end - first, wantedIn(into));
+    for (let r = 0, row = first; row < end; r++, row++) {
+      if (code.left[r] !== 0) {
+        solveRow(absorbances, row, into);
+        continue;
+      }
+      const total = code.lower[r]! + code.higher[r]!;
+      if (stateOfCharge) stateOfCharge[row] = (ofLower ? code.lower[r]! : code.higher[r]!) / total;
+      if (totalVanadium) totalVanadium[row] = total * dilution;
+      if (uncertainty) uncertainty[row] = code.shareUncertainty[r]!;
+      if (totalUncertainty) totalUncertainty[row] = code.totalUncertainty[r]! * dilution;
+      if (chiSquare) chiSquare[row] = code.chiSquare[r]!;
+    }
+  };
+
+  const solveMany = (absorbances: Float64Array, out?: ManyResults): ManyResults => {
+    const count = rowsOf(absorbances, points, out);
+    const into = out ?? allResults(count);
+    if (fast)
+      for (let first = 0; first < count; first += fast.rows)
+        solveBlock(fast, absorbances, first, Math.min(count, first + fast.rows), into);
+    else for (let row = 0; row < count; row++) solveRow(absorbances, row, into);
     return into;
   };
   return { degreesOfFreedom: solver.degreesOfFreedom, solveMany: solveMany as PreparedMany['solveMany'] };
 }
+
+const wantedIn = ({ uncertainty, totalUncertainty, chiSquare }: ManyResults): number =>
+  (uncertainty ? WANTED.share : 0) | (totalUncertainty ? WANTED.total : 0) | (chiSquare ? WANTED.chiSquare : 0);
 
 const allResults = (count: number): Required<ManyResults> => ({
   stateOfCharge: new Float64Array(count),

@@ -1,10 +1,13 @@
 import { readFileSync } from 'node:fs';
 import fc from 'fast-check';
-import { describe, expect, test } from 'vitest';
+import { afterEach, describe, expect, test, vi } from 'vitest';
 import { assaySample, DEFAULT_ASSAY_OPTIONS } from '../../src/assay/assaySample.ts';
 import { calibrationLeverage, concentrationCovariance, shareAndTotal } from '../../src/estimation/uncertainty.ts';
 import { assumedPathUncertainty } from '../../src/estimation/cuvette.ts';
 import { DEFAULT_MODE_PRIORS, namedModes } from '../../src/estimation/namedModes.ts';
+import { WANTED } from '../../src/estimation/fastRows.ts';
+import { axisMap } from '../../src/estimation/kernelAxis.ts';
+import { rowSolver } from '../../src/estimation/rowSolver.ts';
 import { prepare as prepareModel } from '../../src/estimation/prepare.ts';
 import { reduce, solve } from '../../src/estimation/solve.ts';
 import {
@@ -232,6 +235,55 @@ describe('many rows', () => {
     const out = { stateOfCharge: new Float64Array(40) };
     expect(many.solveMany(matrix, out)).toBe(out);
     expect([...out.stateOfCharge]).toEqual([...many.solveMany(matrix).stateOfCharge]);
+  });
+});
+
+describe('the fast code', () => {
+  afterEach(() => vi.unstubAllGlobals());
+  const rowsFor = (pair: Pair, pathLength: number) =>
+    Float64Array.from({ length: 60 }, (_, i) => i).reduce((all: number[], i) => {
+      const sample = { pair, share: (i + 0.5) / 60, total: 0.9 + 0.015 * i, seed: i };
+      return [...all, ...simulated(sample, pathLength).absorbance];
+    }, []);
+
+  test.each<[Pair, number]>([
+    ['V2/V3', 0.1],
+    ['V3/V4', 0.05],
+    ['V4/V5', 0.02],
+  ])('%s: what it solves is what the plain solver solves, and it solves nearly all', (pair, pathLength) => {
+    const rows = Float64Array.from(rowsFor(pair, pathLength));
+    const fast = prepare(reference, axis350, { pair, pathLength });
+    vi.stubGlobal('WebAssembly', undefined);
+    const plain = prepare(reference, axis350, { pair, pathLength });
+    const [a, b] = [fast.solveMany(rows), plain.solveMany(rows)];
+    for (const name of ['stateOfCharge', 'uncertainty', 'totalVanadium', 'totalUncertainty'] as const)
+      a[name].forEach((value, i) => expect(value / b[name][i]!).toBeCloseTo(1, 7));
+    a.chiSquare.forEach((value, i) => expect(value / b.chiSquare[i]!).toBeCloseTo(1, 6));
+  });
+
+  test('where a page forbids code made at run time the plain solver serves', () => {
+    function Forbidden(): never {
+      throw new WebAssembly.CompileError('forbidden by the content security policy');
+    }
+    const real = WebAssembly;
+    vi.stubGlobal('WebAssembly', { Memory: real.Memory, CompileError: real.CompileError, Module: Forbidden });
+    const many = prepare(reference, axis350, { pair: 'V4/V5', pathLength: 0.02 });
+    const found = many.solveMany(simulated({ pair: 'V4/V5', share: 0.4, total: 1.6, seed: 1 }, 0.02).absorbance);
+    expect(found.stateOfCharge[0]).toBeCloseTo(0.4, 1);
+  });
+
+  test('it takes nearly every sound row, and leaves those that need another start', () => {
+    const { model, betweenGroup } = reference.pairs.find((one) => one.pair === 'V4/V5')!;
+    const map = axisMap(axis350, model.wavelength, reference.grid.step);
+    const solver = rowSolver({ pair: 'V4/V5', model, betweenGroup }, map.reached, { pathLength: 0.02 });
+    const code = solver.fast(map, 350)!;
+    const rows = Float64Array.from(rowsFor('V4/V5', 0.02)).subarray(0, 40 * 350);
+    code.input.set(rows);
+    code.input.fill(NaN, 3 * 350, 4 * 350);
+    code.input.fill(-1, 5 * 350, 6 * 350);
+    code.run(40, WANTED.share | WANTED.chiSquare);
+    const left = [...code.left.subarray(0, 40).keys()].filter((r) => code.left[r] !== 0);
+    expect(left).toEqual([3, 5]);
   });
 });
 
