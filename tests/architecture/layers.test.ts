@@ -21,7 +21,7 @@ const ROWS = [
 /** Each library has its room: an adapter names its traps in one place. */
 const LIBRARIES: ReadonlyArray<readonly [RegExp, RegExp]> = [
   [/^node:/, /^(io\/files\.ts|cli\/.+)$/],
-  [/^(ml-|@stdlib\/|pure-rand)/, /^numerics\//],
+  [/^(ml-|pure-rand)/, /^numerics\//],
   [/^papaparse/, /^io\//],
   [/^valibot/, /^(io|calibration|json)\//],
   [/^(commander|cli-progress)/, /^cli\//],
