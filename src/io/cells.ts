@@ -43,6 +43,3 @@ export function kindOfCell(cell: string): CellKind {
   if (OVER_RANGE.test(cell)) return 'over-range';
   return MISSING.test(cell) ? 'missing' : 'text';
 }
-
-/** Lines of a text, whatever ends them. */
-export const splitLines = (text: string): string[] => text.split(/\r\n|\n|\r/);
